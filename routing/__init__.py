@@ -57,9 +57,7 @@ def __getattr__(name: str) -> Any:
     """Load a public name on first use (PEP 562)."""
     home = _HOMES.get(name)
     if home is None:
-        raise AttributeError(
-            f"module 'routing' has no attribute {name!r}; public names: {', '.join(__all__)}"
-        )
+        raise AttributeError(f"module 'routing' has no attribute {name!r}; public names: {', '.join(__all__)}")
     return getattr(importlib.import_module(home), name)
 
 
