@@ -65,7 +65,7 @@ class WaterAsk:
 
 @dataclass(frozen=True, slots=True)
 class IntakeAsk:
-    """The intake. ``mouth_level_m``: top of its mouth; ``None``: the DEM's level there (only where it shows the bed)."""
+    """The intake. ``mouth_level_m``: top of its mouth; ``None``: the DEM level there, where it shows the bed."""
 
     at: PointAsk
     mouth_level_m: float | None = None
