@@ -1,0 +1,273 @@
+"""The gatekeeper: turns heights, masks and steps into one checked record that every kernel trusts."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import Any
+
+import numpy as np
+from numpy.typing import ArrayLike, NDArray
+
+from routing.errors import InputError, Problem
+from routing.records import BoolArray, FloatArray
+from routing.search.compiling import use_cache_folder
+from routing.search.moves import Neighbours, move_table
+
+use_cache_folder()
+
+from routing.search import kernel  # noqa: E402 - numba must know its cache folder before it is imported
+
+_LARGEST_CELLS = 2**31 - 1  # cells are numbered by int32 in the queue
+# A bucket must be narrower than the shortest edge, and by more than rounding can make of it.
+_BUCKET_SHARE = 1.0 - 1e-9
+
+
+@dataclass(frozen=True, slots=True)
+class Grid:
+    """Ground that is ready to be searched, however often.
+
+    Attributes
+    ----------
+    ground, moves
+        Arrays for the kernels.
+    flags : (cells,) uint8 array
+        Barred cells, cells without ground, and cells that need care.
+    level : (rows, cols) float64 array
+        Ground level; without meaning where there is no ground.
+    has_ground : (rows, cols) bool array
+        Where there is ground.
+    step_x_m, step_y_m : (rows,) arrays
+        Steps, one value a row.
+    neighbours
+        The move set.
+    """
+
+    ground: kernel.Ground
+    moves: kernel.Moves
+    flags: NDArray[np.uint8]
+    level: FloatArray
+    has_ground: BoolArray
+    step_x_m: FloatArray
+    step_y_m: FloatArray
+    neighbours: Neighbours
+
+    @property
+    def shape(self) -> tuple[int, int]:
+        """Rows and columns."""
+        return self.ground.rows, self.ground.cols
+
+    @property
+    def least_step_m(self) -> float:
+        """Shortest step of any row: no edge is shorter."""
+        return float(min(self.step_x_m.min(), self.step_y_m.min()))
+
+    @property
+    def reach(self) -> int:
+        """Longest row or column step of any move."""
+        return int(np.abs(self.moves.drow).max())
+
+    def straight_m(self, one: tuple[int, int], other: tuple[int, int]) -> float:
+        """3-D straight distance between two cell centres, with the mean steps of the rows between them."""
+        rows = slice(min(one[0], other[0]), max(one[0], other[0]) + 1)
+        across = (other[1] - one[1]) * float(self.step_x_m[rows].min())
+        down = (other[0] - one[0]) * float(self.step_y_m[rows].min())
+        return float(np.sqrt(across**2 + down**2 + (self.level[other] - self.level[one]) ** 2))
+
+
+def _refuse(what: str, found: object, allowed: str, key: str) -> InputError:
+    return InputError(Problem(what, found=str(found), allowed=allowed, remedy="correct the argument", key=key))
+
+
+def _steps(value: ArrayLike, rows: int, key: str) -> FloatArray:
+    steps = np.asarray(value, dtype=np.float64)
+    if steps.ndim == 0:
+        steps = np.full(rows, float(steps))
+    if steps.shape != (rows,):
+        raise _refuse("steps must be one number, or one a row", steps.shape, f"shape ({rows},)", key)
+    if not np.all(np.isfinite(steps) & (steps > 0.0)):
+        bad = steps[~(np.isfinite(steps) & (steps > 0.0))][0]
+        raise _refuse("steps must be finite and above zero", bad, "metres > 0", key)
+    return np.ascontiguousarray(steps)
+
+
+def _mask(value: ArrayLike | None, shape: tuple[int, int], key: str) -> BoolArray | None:
+    if value is None:
+        return None
+    mask = np.asarray(value)
+    if mask.shape != shape or mask.dtype != np.bool_:
+        raise _refuse("a mask must be a bool array of the ground's shape", f"{mask.dtype} {mask.shape}", f"{shape}", key)
+    return mask
+
+
+def _levels(ground_m: ArrayLike, valid: BoolArray | None) -> tuple[FloatArray, BoolArray]:
+    """Return finite levels and the mask of cells that hold ground (NaN means none)."""
+    level = np.ascontiguousarray(ground_m, dtype=np.float64)
+    if level.ndim != 2 or level.size == 0:
+        raise _refuse("ground must be a 2-D array with cells in it", f"shape {level.shape}", "(rows, cols)", "ground_m")
+    if level.size > _LARGEST_CELLS:
+        raise _refuse("the grid is too large", f"{level.size} cells", f"{_LARGEST_CELLS} cells", "ground_m")
+    if valid is not None and valid.shape != level.shape:
+        raise _refuse("the mask of valid cells has another shape", valid.shape, f"{level.shape}", "valid")
+    has_ground = ~np.isnan(level) if valid is None else valid & ~np.isnan(level)
+    if np.any(np.isinf(level) & has_ground):
+        raise _refuse("ground must not be infinite", "infinity", "finite levels, NaN for nodata", "ground_m")
+    if not has_ground.all():
+        level = np.where(has_ground, level, 0.0 if not has_ground.any() else level[has_ground].min())
+    return level, has_ground
+
+
+def _spread(mask: BoolArray, reach: int) -> BoolArray:
+    """Return the mask grown by ``reach`` cells in every direction (as a square)."""
+    grown = mask.copy()
+    for axis in (0, 1):
+        source = grown.copy()
+        for shift in range(1, reach + 1):
+            ahead = [slice(None), slice(None)]
+            behind = [slice(None), slice(None)]
+            ahead[axis], behind[axis] = slice(shift, None), slice(None, -shift)
+            grown[tuple(ahead)] |= source[tuple(behind)]
+            grown[tuple(behind)] |= source[tuple(ahead)]
+    return grown
+
+
+def _highest_within(level: FloatArray, reach: int) -> NDArray[np.float32]:
+    """Return, rounded up to float32, the highest level within ``reach`` cells in every direction."""
+    high = level.astype(np.float32)
+    high[high < level] = np.nextafter(high[high < level], np.float32(np.inf))
+    for axis in (0, 1):
+        source = high.copy()
+        for shift in range(1, reach + 1):
+            ahead = [slice(None), slice(None)]
+            behind = [slice(None), slice(None)]
+            ahead[axis], behind[axis] = slice(shift, None), slice(None, -shift)
+            np.maximum(high[tuple(ahead)], source[tuple(behind)], out=high[tuple(ahead)])
+            np.maximum(high[tuple(behind)], source[tuple(ahead)], out=high[tuple(behind)])
+    return high.ravel()
+
+
+def _flags(has_ground: BoolArray, barred: BoolArray | None, reach: int) -> NDArray[np.uint8]:
+    rows, cols = has_ground.shape
+    walls = ~has_ground if barred is None else ~has_ground | barred
+    careful = _spread(walls, reach) if walls.any() else walls.copy()
+    for border in (slice(0, reach), slice(max(rows - reach, 0), rows)):
+        careful[border, :] = True
+    for border in (slice(0, reach), slice(max(cols - reach, 0), cols)):
+        careful[:, border] = True
+    flags = careful.view(np.uint8) * np.uint8(kernel.CAREFUL)
+    flags |= (~has_ground).view(np.uint8) * np.uint8(kernel.NO_GROUND)
+    if barred is not None:
+        flags |= barred.view(np.uint8) * np.uint8(kernel.BARRED)
+    return flags.ravel()
+
+
+def _plan_lengths(step_x_m: FloatArray, step_y_m: FloatArray, table: Any) -> FloatArray:
+    """Plan length of each move from each row: an edge between rows takes the mean of its two rows' steps."""
+    rows = np.arange(step_x_m.size)[:, None]
+    other = np.clip(rows + table.drow[None, :], 0, step_x_m.size - 1)
+    across = table.dcol[None, :] * 0.5 * (step_x_m[rows] + step_x_m[other])
+    down = table.drow[None, :] * 0.5 * (step_y_m[rows] + step_y_m[other])
+    return np.ascontiguousarray(np.hypot(across, down))
+
+
+def _blocked_bits(value: ArrayLike | None, shape: tuple[int, int], count: int) -> NDArray[np.uint32]:
+    """Return one bit a move for each cell, from a bool array with a last axis of moves or from such bits."""
+    if value is None:
+        return np.zeros(0, dtype=np.uint32)
+    blocked = np.asarray(value)
+    if blocked.dtype == np.bool_ and blocked.shape == (*shape, count):
+        bits = np.zeros(shape, dtype=np.uint32)
+        for move in range(count):
+            bits |= blocked[:, :, move].astype(np.uint32) << np.uint32(move)
+        return bits.ravel()
+    if blocked.shape == shape and np.issubdtype(blocked.dtype, np.unsignedinteger):
+        return np.ascontiguousarray(blocked, dtype=np.uint32).ravel()
+    allowed = f"bool {(*shape, count)}, or unsigned integers {shape} with a bit a move"
+    raise _refuse("blocked moves have another shape", f"{blocked.dtype} {blocked.shape}", allowed, "blocked_moves")
+
+
+def prepare_grid(
+    ground_m: ArrayLike,
+    step_x_m: ArrayLike,
+    step_y_m: ArrayLike,
+    *,
+    valid: BoolArray | None = None,
+    barred: ArrayLike | None = None,
+    blocked_moves: ArrayLike | None = None,
+    neighbours: Neighbours = 16,
+) -> Grid:
+    """Check the ground and make it ready for searches.
+
+    Parameters
+    ----------
+    ground_m : (rows, cols) array
+        Ground level of each cell centre. NaN means nodata; infinities are refused.
+    step_x_m, step_y_m
+        Ground distance between neighbouring centres along and across rows: a number, or one a row.
+    valid : (rows, cols) bool array, optional
+        Cells that hold ground, where that is not said by NaN.
+    barred : (rows, cols) bool array, optional
+        Cells that may not be entered or crossed.
+    blocked_moves : optional
+        Moves that may not be made: a bool array (rows, cols, neighbours) in the order of `move_list`, or an
+        unsigned integer array (rows, cols) with a bit a move. Each direction of a move is blocked by itself.
+    neighbours
+        8, 16 or 32.
+
+    Raises
+    ------
+    InputError
+        If a shape, type or value is not allowed; the message names the argument.
+    """
+    if neighbours not in (8, 16, 32):
+        raise _refuse("unknown move set", neighbours, "8, 16 or 32", "neighbours")
+    level, has_ground = _levels(ground_m, valid)
+    rows, cols = level.shape
+    table = move_table(neighbours)
+    step_x, step_y = _steps(step_x_m, rows, "step_x_m"), _steps(step_y_m, rows, "step_y_m")
+    ground = kernel.Ground(
+        level=level.ravel(),
+        high=_highest_within(level, table.reach),
+        blocked=_blocked_bits(blocked_moves, (rows, cols), table.drow.size),
+        plan=_plan_lengths(step_x, step_y, table),
+        rows=rows,
+        cols=cols,
+    )
+    moves = kernel.Moves(table.drow * cols + table.dcol, *table[:-1])
+    flags = _flags(has_ground, _mask(barred, level.shape, "barred"), table.reach)
+    return Grid(ground, moves, flags, level, has_ground, step_x, step_y, neighbours)
+
+
+def free_ratio(grid: Grid) -> float:
+    """Return the largest ratio of shortest grid path to straight line on level, free ground of this grid.
+
+    Worked out from the actual moves, row by row: between two neighbouring moves u, v the ratio for the unit
+    direction w is the length of w written as a sum of both, which is largest where w halves the angle in the
+    sense of 1 / cos(half the angle) for equal moves; for oblong cells the largest is found by the closed form
+    of the polar of a segment.
+
+    Returns
+    -------
+    float
+        At least 1. For level square cells 1.0824, 1.0275 and 1.0131 with 8, 16 and 32 neighbours.
+    """
+    worst = 1.0
+    for step_x, step_y in {(float(x), float(y)) for x, y in zip(grid.step_x_m, grid.step_y_m, strict=True)}:
+        vectors = np.column_stack([grid.moves.dcol * step_x, grid.moves.drow * step_y])
+        worst = max(worst, _worst_gauge(vectors))
+    return worst
+
+
+def _worst_gauge(vectors: FloatArray) -> float:
+    """Largest length of shortest sums of the vectors over the length of their sum.
+
+    The norm of "shortest sum" has as unit ball the convex hull of the unit vectors of the moves: the worst
+    direction is the one normal to the hull's edge nearest to the centre, at 1 over its distance.
+    """
+    angle = np.sort(np.arctan2(vectors[:, 1], vectors[:, 0]))
+    gaps = np.diff(np.append(angle, angle[0] + 2.0 * np.pi))
+    return float(1.0 / np.cos(0.5 * gaps.max()))
+
+
+def bucket_width(grid: Grid) -> float:
+    """Width of the queue's buckets: just below the shortest edge."""
+    return grid.least_step_m * _BUCKET_SHARE
