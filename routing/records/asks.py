@@ -83,13 +83,17 @@ class OutletAsk:
 
 @dataclass(frozen=True, slots=True)
 class LimitsAsk:
-    """Limits that the user may set; the defaults are stated in every output."""
+    """Limits that the user may set; the defaults are stated in every output.
+
+    ``pipe_load_hours``: how long suction acts on the pipe in all (the modulus of plastic pipe follows from it).
+    """
 
     reserve_m: float = 2.5
     highest_lift_m: float | None = None
     least_submergence_m: float = 0.3
     collapse_safety: float = 2.0
     gravity_ms2: float = 9.80665
+    pipe_load_hours: float = 8760.0
 
 
 @dataclass(frozen=True, slots=True)
