@@ -1,0 +1,79 @@
+"""One call of the program: what was typed, and whether a stop was asked for."""
+
+from __future__ import annotations
+
+import shlex
+import signal
+import threading
+from collections.abc import Iterator
+from contextlib import contextmanager
+from dataclasses import dataclass, field
+from types import FrameType
+
+#: Signals that mean "stop": Ctrl-C, and a polite request of the system's to end.
+_STOPS = (signal.SIGINT, signal.SIGTERM)
+
+
+@dataclass(slots=True)
+class Stop:
+    """Whether the user asked the run to stop.
+
+    The flag outlives an exception that a library swallowed: the next progress report raises again.
+    """
+
+    asked: bool = False
+
+    def check(self) -> None:
+        """Stop here if a stop was asked for.
+
+        Raises
+        ------
+        KeyboardInterrupt
+            If so.
+        """
+        if self.asked:
+            raise KeyboardInterrupt
+
+
+@dataclass(frozen=True, slots=True)
+class Call:
+    """What the program was called with; click hands it to every command."""
+
+    arguments: tuple[str, ...] = ()
+    stop: Stop = field(default_factory=Stop)
+
+    @property
+    def command_line(self) -> str:
+        """The call as it would be typed."""
+        return shlex.join(["overcrest", *self.arguments])
+
+    def asks(self, *options: str) -> bool:
+        """Return whether one of the options was typed; this works before, and without, a successful parse."""
+        end = self.arguments.index("--") if "--" in self.arguments else len(self.arguments)
+        return any(option in self.arguments[:end] for option in options)
+
+
+@contextmanager
+def listening_for_stops(stop: Stop) -> Iterator[None]:
+    """Turn Ctrl-C, and a request to end, into a flag and a `KeyboardInterrupt` while the block runs.
+
+    A signal that the caller made us ignore (a background job of a shell, ``nohup``) stays ignored. Outside the
+    main thread, where signals cannot be set, nothing is changed.
+    """
+    if threading.current_thread() is not threading.main_thread():
+        yield
+        return
+
+    def ask(_signum: int, _frame: FrameType | None) -> None:
+        stop.asked = True
+        raise KeyboardInterrupt
+
+    before = {name: signal.getsignal(name) for name in _STOPS}
+    for name, handler in before.items():
+        if handler is not signal.SIG_IGN:
+            signal.signal(name, ask)
+    try:
+        yield
+    finally:
+        for name, handler in before.items():
+            signal.signal(name, handler)

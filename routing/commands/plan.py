@@ -1,0 +1,72 @@
+"""``overcrest plan``: find, prove, appraise, price and rank schemes."""
+
+from __future__ import annotations
+
+from pathlib import Path
+
+import click
+
+from routing.commands.call import Call
+from routing.commands.options import (
+    EXIT_DONE,
+    EXIT_NO_ROUTE,
+    json_option,
+    quiet_option,
+    refuse_existing,
+    replace_option,
+    site_argument,
+    verbose_option,
+)
+from routing.commands.progress import reporting
+from routing.commands.streams import emit, emit_json, note
+from routing.commands.warming import tell_if_compiling
+
+
+@click.command(short_help="Find, prove, price and rank schemes; write them to a folder.")
+@site_argument
+@click.option(
+    "--out",
+    "folder",
+    type=click.Path(path_type=Path),
+    help="Folder for the results; it must not exist yet. Without it: SITE's name with -plan, in the current folder.",
+)
+@replace_option
+@click.option(
+    "--top",
+    type=click.IntRange(min=1),
+    default=10,
+    show_default=True,
+    metavar="N",
+    help="Schemes to show in the table; the files and the JSON document hold all.",
+)
+@json_option
+@quiet_option
+@verbose_option
+@click.pass_obj
+def plan(call: Call, site_file: Path, folder: Path | None, replace: bool, top: int, as_json: bool, quiet: bool) -> int:
+    """Find the routes that a siphon can work on for the site file SITE, and rank what can be built on them.
+
+    Writes one folder: routes.geojson for the map, schemes.csv with every figure, run.json with all that the
+    results rest on. Where no route is feasible the folder is written all the same, says what is missing, and
+    the exit code is 3.
+    """
+    folder = Path(f"{site_file.stem}-plan") if folder is None else folder
+    refuse_existing(folder, replace=replace)
+
+    from routing.outputs import plan_document, summary, write_run
+    from routing.planning import plan as make_plan
+    from routing.site import load_site
+
+    site = load_site(site_file)
+    tell_if_compiling(quiet=quiet)
+    with reporting(call.stop, quiet=quiet) as report:
+        result = make_plan(site, progress=report)
+        call.stop.check()
+    write_run(result, folder, replace=replace, command=call.command_line)
+    if as_json:
+        emit_json(plan_document(result))
+    else:
+        emit(summary(result, top=top))
+        if not quiet:
+            note(f"results: {folder}")
+    return EXIT_DONE if result.feasible else EXIT_NO_ROUTE

@@ -1,0 +1,67 @@
+"""Stops: signals become a flag and an exception."""
+
+from __future__ import annotations
+
+import os
+import signal
+import threading
+import time
+
+import pytest
+
+from routing.commands.call import Call, Stop, listening_for_stops
+
+
+def test_command_line_is_quoted_as_typed():
+    assert Call(("plan", "my site.toml")).command_line == "overcrest plan 'my site.toml'"
+
+
+def test_asks_looks_before_two_dashes_only():
+    call = Call(("plan", "--json", "--", "--verbose"))
+    assert call.asks("--json")
+    assert not call.asks("-v", "--verbose")
+
+
+def _send_to_oneself(stop, signum):
+    with listening_for_stops(stop):
+        os.kill(os.getpid(), signum)
+        time.sleep(5.0)
+
+
+@pytest.mark.parametrize("signum", [signal.SIGINT, signal.SIGTERM])
+def test_a_signal_sets_the_flag_and_raises(signum):
+    stop = Stop()
+    before = signal.getsignal(signum)
+    with pytest.raises(KeyboardInterrupt):
+        _send_to_oneself(stop, signum)
+    assert stop.asked
+    assert signal.getsignal(signum) is before
+
+
+def test_a_swallowed_stop_is_raised_again_at_the_next_report():
+    stop = Stop(asked=True)
+    with pytest.raises(KeyboardInterrupt):
+        stop.check()
+
+
+def test_an_ignored_signal_stays_ignored():
+    before = signal.signal(signal.SIGINT, signal.SIG_IGN)
+    try:
+        with listening_for_stops(Stop()):
+            assert signal.getsignal(signal.SIGINT) is signal.SIG_IGN
+    finally:
+        signal.signal(signal.SIGINT, before)
+
+
+def test_another_thread_leaves_signals_alone():
+    seen = []
+
+    def run():
+        with listening_for_stops(Stop()):
+            seen.append(signal.getsignal(signal.SIGINT))
+
+    before = signal.getsignal(signal.SIGINT)
+    thread = threading.Thread(target=run)
+    thread.start()
+    thread.join()
+    assert seen == [before]
