@@ -189,86 +189,25 @@ def under_ceiling(ground: Ground, moves: Moves, rules: Rules, row: int, col: int
 
 
 @njit(cache=True)
-def beyond_hope(rules: Rules, level: float, row: int, col: int, length: float) -> bool:
-    """Whether even the straight line from here to the goal would make the route too long."""
-    if rules.goal_row < 0:
-        return False
-    across = (rules.goal_col - col) * rules.least_step_x
-    down = (rules.goal_row - row) * rules.least_step_y
-    up = rules.goal_level - level
-    # The 1e-12 keeps a route of exactly the longest length from being lost to rounding.
-    return length + np.sqrt(across * across + down * down + up * up) > rules.longest * (1.0 + 1e-12)
+def source_fits(ground: Ground, rules: Rules, field: Field, cell: int, start: float) -> bool:
+    """Whether a source may be used: on ground, not barred, under the ceiling, a better label than it has."""
+    top = min(rules.cap_level, rules.ceiling_level - rules.ceiling_gradient * start)
+    fits = start <= rules.longest and (not rules.has_ceiling or ground.level[cell] <= top)
+    return fits and not field.flags[cell] & (BARRED | NO_GROUND) and start < field.length[cell]
 
 
 @njit(cache=True)
-def push(queue: Queue, state: NDArray[np.int64], cell: int, length: float) -> None:
-    """Put a label in its bucket. The pool must have a free entry."""
-    entry = state[FREE]
-    if entry >= 0:
-        state[FREE] = queue.next[entry]
-    else:
-        entry = state[USED]
-        state[USED] += 1
-    slot = int(length * queue.per_length) & (queue.head.size - 1)
-    queue.cell[entry] = cell
-    queue.next[entry] = queue.head[slot]
-    queue.head[slot] = entry
-    state[LIVE] += 1
-
-
-@njit(cache=True)
-def relax(
-    ground: Ground, moves: Moves, rules: Rules, queue: Queue, field: Field, state: NDArray[np.int64], cell: int
-) -> None:
-    """Try every move from a settled cell."""
+def move_allowed(
+    ground: Ground, moves: Moves, rules: Rules, field: Field, cell: int, move: int, length: float
+) -> bool:
+    """Whether a move that stays on the grid keeps to every rule; cheap rules are looked at first."""
     row = cell // ground.cols
     col = cell - row * ground.cols
-    here = field.length[cell]
-    level = ground.level[cell]
-    careful = (field.flags[cell] & CAREFUL) != 0
-    for move in range(moves.step.size):
-        if careful:
-            row_to, col_to = row + moves.drow[move], col + moves.dcol[move]
-            if row_to < 0 or row_to >= ground.rows or col_to < 0 or col_to >= ground.cols:
-                continue
-        to = cell + moves.step[move]
-        plan = ground.plan[row, move]
-        known = field.length[to]
-        if known <= here + plan:  # no 3-D length can be below the plan length
-            continue
-        rise = ground.level[to] - level
-        length = here + np.sqrt(plan * plan + rise * rise)
-        if known <= length or length > rules.longest:
-            continue
-        if careful and not is_open(ground, moves, field.flags, rules.bilinear, cell, move):
-            continue
-        if ground.blocked.size > 0 and (ground.blocked[cell] >> np.uint32(move)) & np.uint32(1):
-            continue
-        if rules.has_ceiling and not under_ceiling(ground, moves, rules, row, col, move, length):
-            continue
-        if beyond_hope(rules, ground.level[to], row + moves.drow[move], col + moves.dcol[move], length):
-            continue
-        field.length[to] = length
-        field.parent[to] = move
-        push(queue, state, to, length)
-
-
-@njit(cache=True)
-def admit_sources(ground: Ground, rules: Rules, queue: Queue, field: Field, state: NDArray[np.int64]) -> None:
-    """Push the sources whose start length falls in the bucket at hand (or before it)."""
-    while state[NEXT_SOURCE] < queue.source_cell.size:
-        start = queue.source_start[state[NEXT_SOURCE]]
-        if int(start * queue.per_length) > state[BUCKET]:
-            return
-        cell = queue.source_cell[state[NEXT_SOURCE]]
-        state[NEXT_SOURCE] += 1
-        top = min(rules.cap_level, rules.ceiling_level - rules.ceiling_gradient * start)
-        walled = field.flags[cell] & (BARRED | NO_GROUND)
-        fits = start <= rules.longest and (not rules.has_ceiling or ground.level[cell] <= top)
-        if fits and not walled and start < field.length[cell]:
-            field.length[cell] = start
-            field.parent[cell] = PARENT_SOURCE
-            push(queue, state, cell, start)
+    if field.flags[cell] & CAREFUL and not is_open(ground, moves, field.flags, rules.bilinear, cell, move):
+        return False
+    if ground.blocked.size > 0 and (ground.blocked[cell] >> np.uint32(move)) & np.uint32(1):
+        return False
+    return not rules.has_ceiling or under_ceiling(ground, moves, rules, row, col, move, length)
 
 
 @njit(cache=True)
@@ -284,36 +223,104 @@ def settle(
     """Settle at most ``budget`` cells, then return why it stopped.
 
     ``state`` is kept between calls, so a search runs in slices between which the caller can show progress,
-    stop, or make the pool larger.
+    stop, or make the pool larger. Within a call it lives in local variables: with the counters in memory, and
+    the relaxing of edges in a function of its own, the search took three times as long.
     """
-    mask = queue.head.size - 1
+    head, pool_cell, pool_next, per_length = queue.head, queue.cell, queue.next, queue.per_length
+    length, parent, flags = field.length, field.parent, field.flags
+    level, plan = ground.level, ground.plan
+    step, cols, rows, longest = moves.step, ground.cols, ground.rows, rules.longest
+    ring = head.size - 1
+    room = pool_cell.size - step.size - queue.source_cell.size
+    high, ceiling, gradient, cap = ground.high, rules.ceiling_level, rules.ceiling_gradient, rules.cap_level
+    has_ceiling, has_blocked, has_goal = rules.has_ceiling, ground.blocked.size > 0, rules.goal_row >= 0
+    longest_to_goal = rules.longest * (1.0 + 1e-12)  # a route of exactly the longest length is kept
+    bucket, live, free, used = state[BUCKET], state[LIVE], state[FREE], state[USED]
+    source, targets = state[NEXT_SOURCE], state[TARGETS_LEFT]
     count = 0
-    while True:
-        if state[LIVE] == 0:
-            if state[NEXT_SOURCE] >= queue.source_cell.size:
-                return DONE
-            state[BUCKET] = int(queue.source_start[state[NEXT_SOURCE]] * queue.per_length)
-        admit_sources(ground, rules, queue, field, state)
-        slot = state[BUCKET] & mask
-        while queue.head[slot] >= 0:
-            if count >= budget:
-                return SLICE_OVER
-            if queue.cell.size - state[LIVE] < moves.step.size + queue.source_cell.size:
-                return POOL_SMALL
-            entry = queue.head[slot]
-            cell = queue.cell[entry]
-            queue.head[slot] = queue.next[entry]
-            queue.next[entry] = state[FREE]
-            state[FREE] = entry
-            state[LIVE] -= 1
-            if field.flags[cell] & SETTLED:
+    end = -1
+    while end < 0:
+        if live == 0 and source >= queue.source_cell.size:
+            end = DONE
+            break
+        if live == 0:
+            bucket = int(queue.source_start[source] * per_length)
+        while source < queue.source_cell.size and int(queue.source_start[source] * per_length) <= bucket:
+            cell, start = queue.source_cell[source], queue.source_start[source]
+            source += 1
+            if not source_fits(ground, rules, field, cell, start):
                 continue
-            field.flags[cell] |= SETTLED
+            length[cell], parent[cell] = start, PARENT_SOURCE
+            entry = free if free >= 0 else used
+            if free >= 0:
+                free = pool_next[entry]
+            else:
+                used += 1
+            slot = int(start * per_length) & ring
+            pool_cell[entry], pool_next[entry] = cell, head[slot]
+            head[slot] = entry
+            live += 1
+        slot_now = bucket & ring
+        while head[slot_now] >= 0:
+            if count >= budget or live > room:
+                end = SLICE_OVER if count >= budget else POOL_SMALL
+                break
+            entry = head[slot_now]
+            cell = pool_cell[entry]
+            head[slot_now] = pool_next[entry]
+            pool_next[entry] = free
+            free = entry
+            live -= 1
+            if flags[cell] & SETTLED:
+                continue
+            flags[cell] |= SETTLED
             count += 1
-            state[SETTLED_CELLS] += 1
-            relax(ground, moves, rules, queue, field, state, cell)
-            if field.flags[cell] & TARGET:
-                state[TARGETS_LEFT] -= 1
-                if state[TARGETS_LEFT] == 0:
-                    return TARGETS_MET
-        state[BUCKET] += 1
+            if flags[cell] & TARGET:
+                targets -= 1
+                if targets == 0:
+                    end = TARGETS_MET
+                    break
+            row = cell // cols
+            col = cell - row * cols
+            here, from_level = length[cell], level[cell]
+            careful = (flags[cell] & CAREFUL) != 0
+            strict = careful or has_blocked
+            for move in range(step.size):
+                if careful:
+                    row_to, col_to = row + moves.drow[move], col + moves.dcol[move]
+                    if row_to < 0 or row_to >= rows or col_to < 0 or col_to >= cols:
+                        continue
+                to = cell + step[move]
+                flat = plan[row, move]
+                known = length[to]
+                if known <= here + flat:  # no 3-D length can be below the plan length
+                    continue
+                rise = level[to] - from_level
+                reached = here + np.sqrt(flat * flat + rise * rise)
+                if known <= reached or reached > longest:
+                    continue
+                if has_goal:  # leave out what even a straight line would make too long
+                    across = (rules.goal_col - col - moves.dcol[move]) * rules.least_step_x
+                    down = (rules.goal_row - row - moves.drow[move]) * rules.least_step_y
+                    up = rules.goal_level - level[to]
+                    if reached + np.sqrt(across * across + down * down + up * up) > longest_to_goal:
+                        continue
+                under = not has_ceiling or high[cell] <= min(cap, ceiling - gradient * reached)
+                if (strict or not under) and not move_allowed(ground, moves, rules, field, cell, move, reached):
+                    continue
+                length[to], parent[to] = reached, move
+                entry = free if free >= 0 else used
+                if free >= 0:
+                    free = pool_next[entry]
+                else:
+                    used += 1
+                slot = int(reached * per_length) & ring
+                pool_cell[entry], pool_next[entry] = to, head[slot]
+                head[slot] = entry
+                live += 1
+        if end < 0:
+            bucket += 1
+    state[BUCKET], state[LIVE], state[FREE], state[USED] = bucket, live, free, used
+    state[NEXT_SOURCE], state[TARGETS_LEFT] = source, targets
+    state[SETTLED_CELLS] += count
+    return end
