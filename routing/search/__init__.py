@@ -1,5 +1,38 @@
-"""Paths over a grid under a ceiling: arrays only."""
+"""Paths over a grid under a ceiling: arrays only, with the compiled kernels.
+
+`reach` is the plain search; `largest_discharge`, `shortest_path` and `least_raise` ask it the questions of a
+siphon; `lowest_crest` floods the bilinear ground.
+"""
+
+from routing.search.choosing import Flow, Found, Job, largest_discharge, least_raise, shortest_path
 from routing.search.compiling import cache_folder, kernels_ready
+from routing.search.crests import Crest, lowest_crest
 from routing.search.grid import Grid, free_ratio, prepare_grid
 from routing.search.moves import move_list
+from routing.search.paths import PathEdges, border_band, may_escape, path_edges
 from routing.search.reaching import Limitation, Reach, reach, search_grid
+
+__all__ = [
+    "Crest",
+    "Flow",
+    "Found",
+    "Grid",
+    "Job",
+    "Limitation",
+    "PathEdges",
+    "Reach",
+    "border_band",
+    "cache_folder",
+    "free_ratio",
+    "kernels_ready",
+    "largest_discharge",
+    "least_raise",
+    "lowest_crest",
+    "may_escape",
+    "move_list",
+    "path_edges",
+    "prepare_grid",
+    "reach",
+    "search_grid",
+    "shortest_path",
+]

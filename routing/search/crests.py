@@ -69,9 +69,7 @@ def _start(grid: Grid, masks: dict[int, BoolArray], sources: BoolArray) -> tuple
     return basin, cells
 
 
-def _run(
-    basin: flooding.Basin, cells: np.ndarray, tick: Callable[[int], None] | None
-) -> int | None:
+def _run(basin: flooding.Basin, cells: np.ndarray, tick: Callable[[int], None] | None) -> int | None:
     """Flood until a goal is met; return the goal cell, or ``None``."""
     size = _FIRST_HEAP + 2 * cells.size
     heap = flooding.Heap(np.empty(size), np.empty(size, dtype=np.int32))
@@ -84,7 +82,8 @@ def _run(
         end = flooding.flood(basin, heap, state, _SLICE_CELLS)
         if end == flooding.HEAP_SMALL:
             heap = flooding.Heap(
-                np.concatenate([heap.key, np.empty_like(heap.key)]), np.concatenate([heap.cell, np.empty_like(heap.cell)])
+                np.concatenate([heap.key, np.empty_like(heap.key)]),
+                np.concatenate([heap.cell, np.empty_like(heap.cell)]),
             )
         elif end == flooding.GOAL_MET:
             return int(state[flooding.GOAL_CELL])

@@ -95,7 +95,9 @@ def _mask(value: ArrayLike | None, shape: tuple[int, int], key: str) -> BoolArra
         return None
     mask = np.asarray(value)
     if mask.shape != shape or mask.dtype != np.bool_:
-        raise _refuse("a mask must be a bool array of the ground's shape", f"{mask.dtype} {mask.shape}", f"{shape}", key)
+        raise _refuse(
+            "a mask must be a bool array of the ground's shape", f"{mask.dtype} {mask.shape}", f"{shape}", key
+        )
     return mask
 
 

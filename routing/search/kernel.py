@@ -197,9 +197,7 @@ def source_fits(ground: Ground, rules: Rules, field: Field, cell: int, start: fl
 
 
 @njit(cache=True)
-def move_allowed(
-    ground: Ground, moves: Moves, rules: Rules, field: Field, cell: int, move: int, length: float
-) -> bool:
+def move_allowed(ground: Ground, moves: Moves, rules: Rules, field: Field, cell: int, move: int, length: float) -> bool:
     """Whether a move that stays on the grid keeps to every rule; cheap rules are looked at first."""
     row = cell // ground.cols
     col = cell - row * ground.cols
@@ -324,3 +322,19 @@ def settle(
     state[NEXT_SOURCE], state[TARGETS_LEFT] = source, targets
     state[SETTLED_CELLS] += count
     return end
+
+
+@njit(cache=True)
+def path_highs(
+    ground: Ground, moves: Moves, bilinear: bool, cells: NDArray[np.intp], taken: NDArray[np.intp]
+) -> NDArray[np.float64]:
+    """Highest ground along each edge of a path: ``cells`` are the flat start cells, ``taken`` the moves."""
+    highest = np.empty(taken.size)
+    for i in range(taken.size):
+        row = cells[i] // ground.cols
+        col = cells[i] - row * ground.cols
+        if bilinear:
+            highest[i] = edge_high(ground, moves, row, col, taken[i])
+        else:
+            highest[i] = crossed_high(ground, moves, row, col, taken[i])
+    return highest

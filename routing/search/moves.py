@@ -10,6 +10,7 @@ from __future__ import annotations
 
 from fractions import Fraction
 from functools import cache
+from itertools import pairwise
 from math import floor
 from typing import Literal, NamedTuple
 
@@ -95,7 +96,7 @@ def _pieces(move: tuple[int, int]) -> list[tuple[tuple[int, int], tuple[Fraction
         return []
     shares = _cuts(move, Fraction(0))
     found = []
-    for start, end in zip(shares[:-1], shares[1:], strict=True):
+    for start, end in pairwise(shares):
         middle = (start + end) / 2
         cell = (floor(move[0] * middle), floor(move[1] * middle))
         ends = tuple(move[axis] * share - cell[axis] for share in (start, end) for axis in (0, 1))
@@ -108,7 +109,7 @@ def _crossed(move: tuple[int, int]) -> list[tuple[int, int]]:
     half = Fraction(1, 2)
     shares = _cuts(move, half)
     cells = []
-    for start, end in zip(shares[:-1], shares[1:], strict=True):
+    for start, end in pairwise(shares):
         middle = (start + end) / 2
         cell = (floor(move[0] * middle + half), floor(move[1] * middle + half))
         if cell not in {(0, 0), move}:

@@ -83,7 +83,9 @@ class Reach:
         rows, cols = self.length_m.shape
         if not (0 <= row < rows and 0 <= col < cols):
             raise InputError(
-                Problem("the cell is outside the grid", found=f"({row}, {col})", allowed=f"rows < {rows}, cols < {cols}")
+                Problem(
+                    "the cell is outside the grid", found=f"({row}, {col})", allowed=f"rows < {rows}, cols < {cols}"
+                )
             )
         if not np.isfinite(self.length_m[row, col]):
             raise InputError(
@@ -234,7 +236,7 @@ def search_grid(
     )
 
 
-def reach(
+def reach(  # noqa: PLR0913 - one question, many optional conditions
     ground_m: ArrayLike,
     step_x_m: ArrayLike,
     step_y_m: ArrayLike,
@@ -299,8 +301,6 @@ def reach(
     >>> found.path_to(1, 2).tolist()
     [[0, 0], [1, 2]]
     """
-    grid = prepare_grid(
-        ground_m, step_x_m, step_y_m, barred=barred, blocked_moves=blocked_moves, neighbours=neighbours
-    )
+    grid = prepare_grid(ground_m, step_x_m, step_y_m, barred=barred, blocked_moves=blocked_moves, neighbours=neighbours)
     limitation = Limitation(ceiling_level_m, ceiling_gradient, longest_m=max_length_m, rule=ground_rule)
     return search_grid(grid, sources, limitation, start_length_m=start_length_m)

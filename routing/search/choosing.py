@@ -1,0 +1,179 @@
+"""Searches over searches: the largest discharge, the shortest route for a duty, the least raise of the ceiling.
+
+All rest on one fact: what a discharge allows, a smaller one allows too. So a route that is found lifts what is
+known from below by its own figure, and a search that finds none lowers it from above; two or three searches
+past the first are usually enough.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass, replace
+
+import numpy as np
+
+from routing.records import BoolArray
+from routing.search.grid import Grid
+from routing.search.paths import PathEdges, may_escape, path_edges
+from routing.search.reaching import CellLike, Limitation, Reach, Tick, search_grid
+
+
+# Below this share of what the fall alone would drive, a route counts as carrying nothing.
+_NO_FLOW = 1e-6
+
+
+@dataclass(frozen=True, slots=True)
+class Job:
+    """One search problem: from the source to the goal on a grid.
+
+    ``band`` marks the cells from which a path may leave the window (see `border_band`).
+    """
+
+    grid: Grid
+    source: CellLike
+    goal: CellLike
+    band: BoolArray
+    tick: Tick | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class Flow:
+    """What a discharge means for the search, for one pipe at one state of the levels.
+
+    Attributes
+    ----------
+    limit_at
+        The limitation of a discharge (0: still water).
+    carried_by
+        The largest discharge that a path allows, by its edges.
+    carried_at_length
+        The largest discharge that the fall drives through a length in m, suction left aside.
+    """
+
+    limit_at: Callable[[float], Limitation]
+    carried_by: Callable[[PathEdges], float]
+    carried_at_length: Callable[[float], float]
+
+
+@dataclass(frozen=True, slots=True)
+class Found:
+    """A path, and how good it is known to be.
+
+    Attributes
+    ----------
+    path
+        The path, or ``None`` where there is none.
+    low, high
+        Bracket of the best figure of any path (discharge in m3/s, or raise in m); both are the length in m for
+        a shortest path.
+    proven_outside
+        Whether no path through ground outside the window could do better.
+    searches
+        Searches run.
+    """
+
+    path: PathEdges | None
+    low: float
+    high: float
+    proven_outside: bool
+    searches: int
+
+
+def _probe(job: Job, limitation: Limitation) -> tuple[PathEdges | None, bool]:
+    """Search once; return the shortest path and whether it is (or its absence is) proven outside the window."""
+    limited = replace(limitation, goal=job.goal)
+    found: Reach = search_grid(job.grid, [job.source], limited, tick=job.tick)
+    length = float(found.length_m[job.goal])
+    if not np.isfinite(length):
+        return None, not may_escape(job.grid, found, job.band, job.goal, limitation.longest_m)
+    path = path_edges(job.grid, found.path_to(*job.goal), limitation.rule)
+    return path, not may_escape(job.grid, found, job.band, job.goal, length)
+
+
+def shortest_path(job: Job, limitation: Limitation) -> Found:
+    """Find the shortest path that keeps to a limitation.
+
+    Returns
+    -------
+    Found
+        With ``path`` ``None`` where no path does.
+    """
+    path, proven = _probe(job, limitation)
+    length = path.length_m if path is not None else np.inf
+    return Found(path, length, length, proven, 1)
+
+
+def largest_discharge(job: Job, flow: Flow, *, tolerance: float = 1e-3) -> Found:
+    """Find a path that carries the largest discharge, within ``tolerance`` of the best of any path.
+
+    The first search is under the ceiling of still water: a path for any discharge also keeps to that, so none
+    is shorter than the one it finds, and the fall carries no more than it does at that length. Where that
+    path itself carries as much, energy governs and the search is over. Else probes just above the best known
+    path ("is there any better?") take turns with probes half way up.
+
+    Returns
+    -------
+    Found
+        ``low`` is what the path carries by the search's own rules, ``high`` what no path can exceed. Where even
+        still water finds no path, ``path`` is ``None`` and both are 0.
+    """
+    best, proven = _probe(job, flow.limit_at(0.0))
+    searches = 1
+    if best is None:
+        return Found(None, 0.0, 0.0, proven, searches)
+    low, high = flow.carried_by(best), flow.carried_at_length(best.length_m)
+    nothing = _NO_FLOW * high
+    ask_for_better = low > 0.0
+    while high > max(low * (1.0 + tolerance), nothing):
+        discharge = low * (1.0 + tolerance) if ask_for_better else 0.5 * (low + high)
+        path, outside = _probe(job, flow.limit_at(discharge))
+        searches += 1
+        if path is None:
+            high, proven = discharge, outside
+            ask_for_better = False
+            continue
+        own = flow.carried_by(path)
+        if own > low:
+            best, low = path, own
+        at_length = flow.carried_at_length(path.length_m)
+        if at_length < high:
+            high, proven = at_length, outside
+        ask_for_better = not ask_for_better
+    return Found(best, low, max(low, high), proven, searches)
+
+
+def _raise_of(path: PathEdges, limitation: Limitation) -> float:
+    """How far the ceiling must be raised for a path."""
+    falling = limitation.ceiling_level_m - limitation.ceiling_gradient * path.far_length_m
+    top = np.minimum(falling, limitation.cap_level_m)
+    return float(np.max(path.high_m - top))
+
+
+def least_raise(job: Job, limitation: Limitation, *, tolerance_m: float = 0.002) -> Found:
+    """Find the least uniform raise of the ceiling that makes a path, and that path.
+
+    Returns
+    -------
+    Found
+        ``high`` is the raise (in m) that the path needs, ``low`` a raise below which there is no path. ``path``
+        is ``None`` where no raise helps: no way joins the ends within ``longest_m``.
+    """
+    open_sky = replace(limitation, ceiling_level_m=np.inf, ceiling_gradient=0.0, cap_level_m=np.inf)
+    best, proven = _probe(job, open_sky)
+    searches = 1
+    if best is None:
+        return Found(None, np.inf, np.inf, proven, searches)
+    high = _raise_of(best, limitation)
+    low = min(0.0, high)
+    ask_for_better = False
+    while high - low > tolerance_m:
+        lift = high - tolerance_m if ask_for_better else 0.5 * (low + high)
+        path, outside = _probe(job, limitation.raised(lift))
+        searches += 1
+        if path is None:
+            low, proven = lift, outside
+            ask_for_better = False
+        else:
+            best, high = path, min(high, _raise_of(path, limitation))
+            ask_for_better = not ask_for_better
+    return Found(best, low, high, proven, searches)
