@@ -1,1 +1,42 @@
-"""Room: terrain."""
+"""Room: terrain. The ground: opening a DEM, true lengths on it, sampling it, and the water body.
+
+The only room besides ``site`` and ``outputs`` that opens files. It knows nothing of hydraulics.
+"""
+
+from routing.terrain.flats import FlatWater, flat_water, nearest_valid
+from routing.terrain.frames import local_utm
+from routing.terrain.placing import place_point
+from routing.terrain.reading import Dem, inspect, open_dem
+from routing.terrain.sampling import SampleState, cell_at, rowcol_of, sample, sample_rowcol, xy_of
+from routing.terrain.sections import ground_along, long_section
+from routing.terrain.shores import cells_area_m2, shoreline_of, water_body_from_polygon
+from routing.terrain.vectors import LayerAsk, read_geometries
+from routing.terrain.water import dry_cell, water_body, water_cells, with_voids_as_water
+
+__all__ = [
+    "Dem",
+    "FlatWater",
+    "LayerAsk",
+    "SampleState",
+    "cell_at",
+    "cells_area_m2",
+    "dry_cell",
+    "flat_water",
+    "ground_along",
+    "inspect",
+    "local_utm",
+    "long_section",
+    "nearest_valid",
+    "open_dem",
+    "place_point",
+    "read_geometries",
+    "rowcol_of",
+    "sample",
+    "sample_rowcol",
+    "shoreline_of",
+    "water_body",
+    "water_body_from_polygon",
+    "water_cells",
+    "with_voids_as_water",
+    "xy_of",
+]
