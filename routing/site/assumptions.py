@@ -1,0 +1,118 @@
+"""What the site file leaves open, and what is taken in its place: told with every result."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+
+from routing.records import Pipe
+from routing.site.fields import number_text
+from routing.site.models import AirModel, LimitsModel, LossesModel, SiteModel, WaterModel
+from routing.site.pipes import DEFAULT_POISSON_RATIO
+
+
+def list_assumptions(model: SiteModel, pipes: tuple[Pipe, ...]) -> tuple[str, ...]:
+    """Say every default that was used and matters.
+
+    Parameters
+    ----------
+    model
+        The site file as checked.
+    pipes
+        Its pipes as built, in the same order.
+
+    Returns
+    -------
+    tuple of str
+        One sentence each.
+    """
+    parts = (_terrain(model), _air(model.air), _water(model.water), _outlet(model), _losses(model.losses))
+    rest = (_limits(model.limits), _prices(model), _pipes(model, pipes))
+    return tuple(sentence for part in (*parts, *rest) for sentence in part)
+
+
+def _terrain(model: SiteModel) -> Iterator[str]:
+    given = model.terrain.model_fields_set
+    if model.terrain.surface == "unknown":
+        yield "Whether the DEM shows bare ground or the top of trees is not stated (terrain.surface)."
+    if model.terrain.vertical_error_90_m is None:
+        yield "The vertical error of the DEM is not stated (terrain.vertical_error_90_m)."
+    if "water_shown" not in given:
+        yield "The DEM is taken to show the water's flat surface, not its bed (terrain.water_shown)."
+
+
+def _air(air: AirModel) -> Iterator[str]:
+    if "barometric_low_pa" not in air.model_fields_set:
+        low = number_text(air.barometric_low_pa)
+        yield f"{low} Pa are taken off the air pressure for bad weather (air.barometric_low_pa)."
+    if air.pressure_pa is None and air.altitude_m is None:
+        yield "Air pressure follows from the levels of the DEM, taken as heights above the sea (air.altitude_m)."
+
+
+def _water(water: WaterModel) -> Iterator[str]:
+    if water.present_level_m is None:
+        yield "The present water level is read off the DEM at the intake (water.present_level_m)."
+    if "temperature_c" not in water.model_fields_set:
+        yield f"The water is taken to be at {number_text(water.temperature_c)} °C (water.temperature_c)."
+
+
+def _outlet(model: SiteModel) -> Iterator[str]:
+    outlet = model.outlet
+    if outlet.level_m is None and outlet.height_above_ground_m is None:
+        yield "The outlet's axis lies at ground level (outlet.height_above_ground_m)."
+    if outlet.tailwater_level_m is None:
+        yield "The outlet discharges freely; no water stands above its axis (outlet.tailwater_level_m)."
+
+
+def _losses(losses: LossesModel) -> Iterator[str]:
+    words = {
+        "entrance": "the entrance",
+        "exit": "the exit",
+        "valve_open": "the open outlet valve",
+        "bend_loss_per_km": "the bends of a kilometre",
+    }
+    for name, text in words.items():
+        if name not in losses.model_fields_set:
+            yield f"The loss of {text} is taken as K = {number_text(getattr(losses, name))} (losses.{name})."
+
+
+def _limits(limits: LimitsModel) -> Iterator[str]:
+    words = {
+        "reserve_m": "A reserve of {} m of water is kept against boiling",
+        "least_submergence_m": "The intake mouth stays at least {} m under water",
+        "collapse_safety": "The factor of safety against collapse is {}",
+        "pipe_load_hours": "Suction acts on the pipe for {} h in all",
+    }
+    for name, text in words.items():
+        if name not in limits.model_fields_set:
+            yield f"{text.format(number_text(getattr(limits, name)))} (limits.{name})."
+
+
+def _prices(model: SiteModel) -> Iterator[str]:
+    priced = any(pipe.supply_per_m is not None for pipe in model.pipes)
+    if not priced:
+        yield "No pipe has a price: costs are 0 and rank nothing (pipes.supply_per_m)."
+        return
+    if not model.prices.currency:
+        yield "The currency of the prices is not stated (prices.currency)."
+    if not model.prices.date:
+        yield "The date of the prices is not stated (prices.date)."
+    for number, pipe in enumerate(model.pipes, start=1):
+        for name in ("laying_per_m", "fixed_each"):
+            if getattr(pipe, name) is None:
+                yield f"pipes[{number}]: {name} is not given and counts as 0."
+
+
+def _pipes(model: SiteModel, pipes: tuple[Pipe, ...]) -> Iterator[str]:
+    for number, (asked, pipe) in enumerate(zip(model.pipes, pipes, strict=True), start=1):
+        label = f"pipes[{number}] ({pipe.name})"
+        own = asked.table is None
+        if asked.ovality_pct is None:
+            yield f"{label}: out-of-roundness is taken as {number_text(pipe.ovality_pct)} % (ovality_pct)."
+        if own and asked.least_wall_mm is None:
+            yield f"{label}: the thinnest wall is taken to be the mean wall (least_wall_mm)."
+        if own and asked.modulus_mpa is None:
+            yield f"{label}: no modulus is given, so collapse cannot be checked (modulus_mpa)."
+        if own and asked.poisson_ratio is None:
+            yield f"{label}: Poisson's ratio is taken as {number_text(DEFAULT_POISSON_RATIO)} (poisson_ratio)."
+        if asked.table == "ISO 4427" and asked.material is None:
+            yield f"{label}: the material is taken to be PE100 (material)."
