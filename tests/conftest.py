@@ -30,10 +30,10 @@ def project() -> Path:
 
 @pytest.fixture
 def demo(tmp_path: Path) -> Path:
-    """The site file of the demo job, in a copy of its folder."""
+    """The site file of the demo job, in a copy of ``sample_dem``."""
     folder = tmp_path / "sample_dem"
     shutil.copytree(ROOT / "sample_dem", folder)
-    return folder / "site.toml"
+    return folder / "brackenmere" / "site.toml"
 
 
 @pytest.fixture

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import shlex
 import signal
 import threading
 from collections.abc import Iterator
@@ -43,9 +42,9 @@ class Call:
     stop: Stop = field(default_factory=Stop)
 
     @property
-    def command_line(self) -> str:
-        """The call as it would be typed."""
-        return shlex.join(["overcrest", *self.arguments])
+    def words(self) -> tuple[str, ...]:
+        """The call, the program's name included."""
+        return ("overcrest", *self.arguments)
 
     def asks(self, *options: str) -> bool:
         """Return whether one of the options was typed; this works before, and without, a successful parse."""

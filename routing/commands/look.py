@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from datetime import UTC, datetime
 from pathlib import Path
 
 import click
@@ -9,7 +10,7 @@ import click
 from routing.commands.call import Call
 from routing.commands.options import EXIT_DONE, json_option, quiet_option, site_argument, verbose_option
 from routing.commands.progress import reporting
-from routing.commands.streams import emit, emit_json
+from routing.commands.streams import emit_json, emit_table
 from routing.commands.warming import tell_if_compiling
 
 
@@ -25,16 +26,18 @@ def look(call: Call, site_file: Path, as_json: bool, quiet: bool) -> int:
     Size, cell, CRS, datum and units of the DEM, the water found, its spill level, the lowest possible crest,
     and every assumption made. Nothing is written.
     """
-    from routing.outputs import look_document, outlook_summary
+    from routing.outputs import RunFacts, look_document, outlook_summary
     from routing.planning import look as look_at
     from routing.site import load_site
 
+    started = datetime.now(UTC)
     site = load_site(site_file)
     tell_if_compiling(quiet=quiet)
     with reporting(call.stop, quiet=quiet) as report:
         outlook = look_at(site, progress=report)
     if as_json:
-        emit_json(look_document(outlook))
+        run = RunFacts(command=call.words, started=started, finished=datetime.now(UTC))
+        emit_json(look_document(outlook, run))
     else:
-        emit(outlook_summary(outlook))
+        emit_table(outlook_summary(outlook))
     return EXIT_DONE

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from datetime import UTC, datetime
 from pathlib import Path
 
 import click
@@ -12,13 +13,12 @@ from routing.commands.options import (
     EXIT_NO_ROUTE,
     json_option,
     quiet_option,
-    refuse_existing,
     replace_option,
     site_argument,
     verbose_option,
 )
 from routing.commands.progress import reporting
-from routing.commands.streams import emit, emit_json, note
+from routing.commands.streams import emit_json, emit_table, note
 from routing.commands.warming import tell_if_compiling
 
 
@@ -50,23 +50,24 @@ def plan(call: Call, site_file: Path, folder: Path | None, replace: bool, top: i
     results rest on. Where no route is feasible the folder is written all the same, says what is missing, and
     the exit code is 3.
     """
-    folder = Path(f"{site_file.stem}-plan") if folder is None else folder
-    refuse_existing(folder, replace=replace)
-
-    from routing.outputs import plan_document, summary, write_run
+    from routing.outputs import RunFacts, check_folder, plan_document, summary, write_run
     from routing.planning import plan as make_plan
     from routing.site import load_site
 
+    started = datetime.now(UTC)
+    folder = Path(f"{site_file.stem}-plan") if folder is None else folder
+    check_folder(folder, replace=replace)
     site = load_site(site_file)
     tell_if_compiling(quiet=quiet)
     with reporting(call.stop, quiet=quiet) as report:
         result = make_plan(site, progress=report)
         call.stop.check()
-    write_run(result, folder, replace=replace, command=call.command_line)
+    run = RunFacts(command=call.words, started=started, finished=datetime.now(UTC))
+    write_run(result, folder, replace=replace, run=run)
     if as_json:
-        emit_json(plan_document(result))
+        emit_json({**plan_document(result, run), "folder": str(folder)})
     else:
-        emit(summary(result, top=top))
+        emit_table(summary(result, top=top))
         if not quiet:
             note(f"results: {folder}")
     return EXIT_DONE if result.feasible else EXIT_NO_ROUTE

@@ -2,17 +2,24 @@
 
 from __future__ import annotations
 
+import io
 import json
 import os
 import sys
 import warnings
 from collections.abc import Iterator, Mapping
 from contextlib import contextmanager
-from typing import Any, TextIO
+from typing import TYPE_CHECKING, Any, TextIO
 
 import click
 
 from routing.errors import OutputError, Problem
+
+if TYPE_CHECKING:
+    from rich.console import RenderableType
+
+#: Columns of a table where stdout is no terminal.
+_WIDTH = 100
 
 
 def emit(text: str) -> None:
@@ -34,6 +41,16 @@ def emit(text: str) -> None:
         raise OutputError(
             Problem("the results cannot be printed", found=str(error), remedy="send stdout to a place with room")
         ) from error
+
+
+def emit_table(table: RenderableType) -> None:
+    """Print what rich can show on stdout: coloured on a terminal, plain text elsewhere."""
+    from rich.console import Console
+
+    terminal = sys.stdout is not None and sys.stdout.isatty()
+    text = io.StringIO()
+    Console(file=text, force_terminal=terminal, width=None if terminal else _WIDTH, highlight=False).print(table)
+    emit("\n".join(line.rstrip() for line in text.getvalue().splitlines()))
 
 
 def emit_json(document: Mapping[str, Any]) -> None:
@@ -78,7 +95,14 @@ def library_warnings(*, shown: bool) -> Iterator[None]:
     What Overcrest itself has to warn of is part of its results, and never comes this way.
     """
 
-    def show(message: Warning | str, category: type[Warning], filename: str, lineno: int, *_: object) -> None:
+    def show(
+        message: Warning | str,
+        category: type[Warning],
+        filename: str,
+        lineno: int,
+        _file: TextIO | None = None,
+        _line: str | None = None,
+    ) -> None:
         if shown:
             note(f"library warning: {category.__name__}: {message} ({filename}:{lineno})")
 

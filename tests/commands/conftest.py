@@ -6,10 +6,12 @@ import sys
 from collections.abc import Callable
 from dataclasses import dataclass, field
 from pathlib import Path
-from types import ModuleType
+from types import ModuleType, SimpleNamespace
 from typing import Any
 
 import pytest
+
+from routing.errors import OutputError, Problem
 
 
 @dataclass
@@ -31,8 +33,13 @@ class Behind:
         self.work(progress)
         return self
 
-    def write_run(self, plan: Any, folder: Path, *, replace: bool = False, command: str = "") -> None:
-        self.calls.append(("write_run", folder, replace, command))
+    def check_folder(self, folder: Path, *, replace: bool = False) -> Path:
+        if folder.exists() and not replace:
+            raise OutputError(Problem("the folder exists already", remedy="use --replace"))
+        return folder
+
+    def write_run(self, plan: Any, folder: Path, *, replace: bool, run: SimpleNamespace) -> None:
+        self.calls.append(("write_run", folder, replace, run.command))
 
 
 def _room(monkeypatch: pytest.MonkeyPatch, name: str, **names: Any) -> None:
@@ -65,8 +72,10 @@ def behind(monkeypatch: pytest.MonkeyPatch, tmp_path: Path) -> Behind:
     _room(
         monkeypatch,
         "routing.outputs",
-        plan_document=lambda plan: {"feasible": plan.feasible},
-        look_document=lambda outlook: {"looked": True},
+        RunFacts=SimpleNamespace,
+        check_folder=stand_in.check_folder,
+        plan_document=lambda plan, run: {"feasible": plan.feasible, "took_s": (run.finished - run.started).seconds},
+        look_document=lambda outlook, run: {"looked": True, "command": run.command},
         summary=lambda plan, top: f"best {top} schemes",
         outlook_summary=lambda outlook: "what was understood",
         write_run=stand_in.write_run,

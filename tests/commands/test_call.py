@@ -12,8 +12,8 @@ import pytest
 from routing.commands.call import Call, Stop, listening_for_stops
 
 
-def test_command_line_is_quoted_as_typed():
-    assert Call(("plan", "my site.toml")).command_line == "overcrest plan 'my site.toml'"
+def test_words_begin_with_the_program():
+    assert Call(("plan", "my site.toml")).words == ("overcrest", "plan", "my site.toml")
 
 
 def test_asks_looks_before_two_dashes_only():

@@ -15,4 +15,7 @@ def test_prints_what_was_understood(behind, capsys):
 
 def test_json_is_one_document(behind, capsys):
     assert main(["look", "weir.toml", "--json"]) == 0
-    assert json.loads(capsys.readouterr().out) == {"looked": True}
+    assert json.loads(capsys.readouterr().out) == {
+        "looked": True,
+        "command": ["overcrest", "look", "weir.toml", "--json"],
+    }

@@ -15,7 +15,7 @@ def test_writes_the_folder_and_prints_the_table(behind, capsys):
     assert shown.err == "results: weir-plan\n"
     assert behind.calls == [
         ("plan", "site weir.toml"),
-        ("write_run", Path("weir-plan"), False, "overcrest plan weir.toml --top 3"),
+        ("write_run", Path("weir-plan"), False, ("overcrest", "plan", "weir.toml", "--top", "3")),
     ]
 
 
@@ -28,7 +28,7 @@ def test_no_feasible_route_is_exit_3_and_writes_all_the_same(behind, capsys):
 def test_json_is_the_only_thing_on_stdout(behind, capsys):
     behind.feasible = False
     assert main(["plan", "weir.toml", "--json"]) == 3
-    assert json.loads(capsys.readouterr().out) == {"feasible": False}
+    assert json.loads(capsys.readouterr().out) == {"feasible": False, "took_s": 0, "folder": "weir-plan"}
 
 
 def test_a_taken_folder_is_refused_before_any_work(behind, capsys, tmp_path):

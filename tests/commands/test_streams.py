@@ -9,6 +9,7 @@ import subprocess
 import sys
 
 import pytest
+from rich.text import Text
 
 from routing.commands import streams
 from routing.errors import OutputError
@@ -19,6 +20,23 @@ def test_json_is_plain_ascii(capsys):
     text = capsys.readouterr().out
     assert text.isascii()
     assert json.loads(text) == {"name": "Nádrž", "value": 1.5}
+
+
+def test_a_table_is_plain_text_a_hundred_columns_wide_off_the_terminal(capsys):
+    streams.emit_table(Text("word " * 50, style="bold red"))
+    lines = capsys.readouterr().out.splitlines()
+    assert "\x1b" not in "".join(lines)
+    assert 90 < max(map(len, lines)) <= 100
+
+
+def test_a_table_is_coloured_on_a_terminal(monkeypatch, capsys):
+    monkeypatch.setattr(streams.sys.stdout, "isatty", lambda: True, raising=False)
+    monkeypatch.setenv("TERM", "xterm")
+    monkeypatch.delenv("NO_COLOR", raising=False)
+    shown = []
+    monkeypatch.setattr(streams, "emit", shown.append)
+    streams.emit_table(Text("crest", style="bold red"))
+    assert "\x1b[" in shown[0]
 
 
 def test_json_refuses_what_json_cannot_say():
