@@ -13,7 +13,7 @@ from routing.records import Ceiling, FloatArray, Levels, Limits, Losses, Pipe, W
 _LONGEST_LINE_M = 1e7
 
 
-def suction_ceiling(  # noqa: PLR0913, PLR0917 - the five records of a case and the discharge
+def suction_ceiling(
     pipe: Pipe, levels: Levels, losses: Losses, water: Water, limits: Limits, discharge_m3s: float
 ) -> Ceiling:
     """Return how high the crown may lie, by chainage, and how long the pipe may be, for one discharge.
@@ -61,7 +61,7 @@ def suction_ceiling(  # noqa: PLR0913, PLR0917 - the five records of a case and 
     )
 
 
-def energy_discharge_m3s(  # noqa: PLR0913, PLR0917 - the five records of a case and the length
+def energy_discharge_m3s(
     pipe: Pipe, length_m: float, levels: Levels, losses: Losses, water: Water, limits: Limits
 ) -> float:
     """Return the discharge in m3/s that uses up the whole fall over a length, outlet valve open.

@@ -30,6 +30,9 @@ PE_SERIES: dict[float, int] = {
     41.0: 13,
 }
 
+#: Small sizes whose computed wall the standard rounds up further, to 2.0 or 3.0 mm (read in copies of ISO 4427-2:2007
+#: and MS 1058-2).
+_PE_ROUNDED_UP_MM: dict[tuple[float, float], float] = {(32.0, 11.0): 3.0, (32.0, 17.0): 2.0, (40.0, 21.0): 2.0}
 #: Thinnest wall in mm that ISO 4427-2 lists; a thinner one that the rule would give is not made.
 _PE_THINNEST_MM = 2.0
 #: Thickest wall in mm taken into the table: the standard leaves the thicker ones out (limit recalled from memory).
@@ -41,10 +44,13 @@ def pe_least_wall_mm(outside_diameter_mm: float, sdr: float) -> float | None:
 
     By the rule of ISO 4065: ``e = d / (2 S + 1)`` with S = 10^(n/10), rounded up to 0.1 mm (after rounding to
     0.01 mm). It gives 88 of the 89 walls of MS 1058-2 for SDR 6 to 17; 200 mm SDR 6 is 33.3 mm there and 33.2 mm in
-    a copy of ISO 4427-2:2007 and by the rule. The nominal SDR does not give the wall: 110/17 is 6.5, the table 6.6.
+    a copy of ISO 4427-2:2007 and by the rule (the thinner is kept: the safe side for collapse). Three small sizes
+    are rounded up further. The nominal SDR does not give the wall: 110/17 is 6.5, the table 6.6.
     """
     if outside_diameter_mm not in PE_DIAMETERS_MM or sdr not in PE_SERIES:
         return None
+    if (outside_diameter_mm, sdr) in _PE_ROUNDED_UP_MM:
+        return _PE_ROUNDED_UP_MM[outside_diameter_mm, sdr]
     exact = outside_diameter_mm / (2.0 * 10.0 ** (PE_SERIES[sdr] / 10.0) + 1.0)
     hundredths = round(exact * 100.0)
     wall = math.ceil(hundredths / 10.0) / 10.0
@@ -54,7 +60,8 @@ def pe_least_wall_mm(outside_diameter_mm: float, sdr: float) -> float | None:
 def pe_wall_tolerance_mm(least_wall_mm: float) -> float:
     """Return how much thicker than the minimum a PE wall may be, in mm: ISO 11922-1, grade V.
 
-    ``0.1 e + 0.1`` rounded up to 0.1 mm: recalled from memory, and found to give the maximum walls of MS 1058-2.
+    ``0.1 e + 0.1`` rounded up to 0.1 mm: recalled from memory, and found to give 86 of 88 maximum walls
+    of MS 1058-2; the other two are 0.1 mm larger there.
     """
     tenths = round(least_wall_mm * 10.0)
     return (-(-tenths // 10) + 1) / 10.0

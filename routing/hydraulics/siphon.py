@@ -17,6 +17,8 @@ SUCTION, OUTLET, INTAKE = "suction", "outlet", "intake"
 
 #: A discharge given back after a round trip through V = Q/A may lie this far above the energy limit.
 _ROUNDING = 1e-9
+#: A reserve this close to nothing, in m, is nothing: at the suction limit rounding leaves 1e-13 of either sign.
+_NO_RESERVE_M = 1e-9
 
 
 @dataclass(frozen=True, slots=True)
@@ -70,9 +72,7 @@ class _Section:
         return "suction" if self.suction_ms < self.energy_ms else "energy"
 
 
-def run_siphon(  # noqa: PLR0913, PLR0917 - the five records of a case and the long section
-    pipe: Pipe, profile: Profile, levels: Levels, losses: Losses, water: Water, limits: Limits
-) -> SiphonRun:
+def run_siphon(pipe: Pipe, profile: Profile, levels: Levels, losses: Losses, water: Water, limits: Limits) -> SiphonRun:
     """Return the state in which the siphon runs as hard as it may.
 
     The discharge is the smaller of two limits. *Energy*: the whole fall is used up with the outlet valve open,
@@ -106,7 +106,7 @@ def run_siphon(  # noqa: PLR0913, PLR0917 - the five records of a case and the l
     return _state(section, min(section.energy_ms, section.suction_ms))
 
 
-def run_at(  # noqa: PLR0913, PLR0917 - the five records of a case, the long section and the discharge
+def run_at(
     pipe: Pipe,
     profile: Profile,
     levels: Levels,
@@ -173,6 +173,8 @@ def _state(section: _Section, velocity_ms: float) -> SiphonRun:
     reserve = float(left[governing])
     if case.cap_m - section.crest_m < reserve:
         governing, reserve = section.crest, case.cap_m - section.crest_m
+    if abs(reserve) <= _NO_RESERVE_M:
+        reserve = 0.0
     breaking, cause = _breaking(case, section.crest_m)
     return SiphonRun(
         discharge_m3s=velocity_ms * conduit.area_m2,
