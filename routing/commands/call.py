@@ -2,8 +2,10 @@
 
 from __future__ import annotations
 
+import math
 import signal
 import threading
+import time
 from collections.abc import Iterator
 from contextlib import contextmanager
 from dataclasses import dataclass, field
@@ -11,6 +13,9 @@ from types import FrameType
 
 #: Signals that mean "stop": Ctrl-C, and a polite request of the system's to end.
 _STOPS = (signal.SIGINT, signal.SIGTERM)
+
+#: A finger that stays on Ctrl-C must not break off the cleaning up that its first press began.
+_PATIENCE_S = 1.0
 
 
 @dataclass(slots=True)
@@ -21,6 +26,7 @@ class Stop:
     """
 
     asked: bool = False
+    raised_s: float = -math.inf
 
     def check(self) -> None:
         """Stop here if a stop was asked for.
@@ -64,7 +70,10 @@ def listening_for_stops(stop: Stop) -> Iterator[None]:
         return
 
     def ask(_signum: int, _frame: FrameType | None) -> None:
-        stop.asked = True
+        now_s = time.monotonic()
+        if now_s - stop.raised_s < _PATIENCE_S:
+            return
+        stop.asked, stop.raised_s = True, now_s
         raise KeyboardInterrupt
 
     before = {name: signal.getsignal(name) for name in _STOPS}

@@ -2,10 +2,8 @@
 
 from __future__ import annotations
 
-import os
 import signal
 import threading
-import time
 
 import pytest
 
@@ -24,8 +22,7 @@ def test_asks_looks_before_two_dashes_only():
 
 def _send_to_oneself(stop, signum):
     with listening_for_stops(stop):
-        os.kill(os.getpid(), signum)
-        time.sleep(5.0)
+        signal.raise_signal(signum)
 
 
 @pytest.mark.parametrize("signum", [signal.SIGINT, signal.SIGTERM])
@@ -36,6 +33,39 @@ def test_a_signal_sets_the_flag_and_raises(signum):
         _send_to_oneself(stop, signum)
     assert stop.asked
     assert signal.getsignal(signum) is before
+
+
+def test_more_signals_at_once_do_not_break_off_the_cleaning_up():
+    cleaned = []
+
+    def run():
+        with listening_for_stops(Stop()):
+            try:
+                signal.raise_signal(signal.SIGINT)
+            finally:
+                signal.raise_signal(signal.SIGINT)
+                cleaned.append(True)
+
+    with pytest.raises(KeyboardInterrupt):
+        run()
+    assert cleaned == [True]
+
+
+def test_a_later_signal_is_heard_again():
+    stop = Stop()
+    heard = 0
+
+    def run():
+        with listening_for_stops(stop):
+            signal.raise_signal(signal.SIGINT)
+
+    for _ in range(2):
+        try:
+            run()
+        except KeyboardInterrupt:
+            heard += 1
+        stop.raised_s -= 5.0
+    assert heard == 2
 
 
 def test_a_swallowed_stop_is_raised_again_at_the_next_report():
