@@ -17,7 +17,6 @@ from routing.search.grid import Grid
 from routing.search.paths import PathEdges, may_escape, path_edges
 from routing.search.reaching import CellLike, Limitation, Reach, Tick, search_grid
 
-
 # Below this share of what the fall alone would drive, a route counts as carrying nothing.
 _NO_FLOW = 1e-6
 

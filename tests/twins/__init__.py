@@ -1,0 +1,1 @@
+"""Slow, obvious references that tests share. The package never imports them."""
