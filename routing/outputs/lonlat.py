@@ -170,7 +170,10 @@ class LonLat:
             If the position lies outside the area where the CRS can be turned.
         """
         self.positions(np.array([x]), np.array([y]))
-        used = self._transformer.get_last_used_operation()
+        try:
+            used = self._transformer.get_last_used_operation()
+        except ProjError:  # PROJ had nothing to do: the DEM is in WGS 84 longitude and latitude
+            used = self._transformer
         return {"operation": used.description, "accuracy_m": None if used.accuracy < 0 else float(used.accuracy)}
 
 

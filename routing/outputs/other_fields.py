@@ -181,6 +181,14 @@ WATER_FIELDS: tuple[Field[WaterBody], ...] = (
         lambda _, b: b.touches_edge,
     ),
     Field(
+        "touches_window_edge",
+        "",
+        "flag",
+        None,
+        "Whether the window read ends in the water though the DEM goes on: the area is then a part only.",
+        lambda _, b: b.touches_open_border,
+    ),
+    Field(
         "spill_level_m",
         "m",
         "number",

@@ -73,6 +73,8 @@ def _water_rows(outlook: Outlook) -> list[tuple[str, str]]:
     )
     area = f"{figures(body.area_m2)} m2" if body.area_m2 < 1e5 else f"{figures(body.area_m2 / 1e4)} ha"
     cut = ", a part only: the DEM ends in the water" if body.touches_edge else ""
+    if body.touches_open_border:
+        cut += ", a part only: the window read ends in the water"
     voids = f"; {body.void_cells:,} enclosed cells without data counted as water" if body.void_cells else ""
     source = (
         "given as a polygon" if body.source == "polygon" else f"flooded from the intake at {fixed(body.level_m, 2)} m"

@@ -118,5 +118,5 @@ def _shortfall_notes(plan: Plan) -> list[RenderableType]:
     lines = [s.text if s.pipe in s.text else f"{s.pipe}: {s.text}" for s in plan.shortfalls]
     found: list[RenderableType] = ["", heading("No route for"), bullets(lines, "in run.json")]
     if not plan.feasible:
-        found += ["", heading("What would help, any one of"), bullets(remedies(least, plan.setting.limits.reserve_m))]
+        found += ["", heading("What would help, any one of"), bullets(remedies(least, plan.setting))]
     return found

@@ -112,15 +112,15 @@ def least_shortfall(plan: Plan) -> Shortfall | None:
     return min(plan.shortfalls, key=lambda s: math.inf if s.raise_m is None else s.raise_m)
 
 
-def remedies(shortfall: Shortfall, reserve_m: float) -> list[str]:
+def remedies(shortfall: Shortfall, setting: Setting) -> list[str]:
     """Return what would help against a shortfall, in metres where that is known.
 
     Parameters
     ----------
     shortfall
         What is missing.
-    reserve_m
-        The reserve asked for: giving up more than that is no remedy.
+    setting
+        Gives the reserve asked for (giving up more than that is no remedy) and the levels.
     """
     if shortfall.cause == "cut off":
         return ["a DEM without the gap, or an end on the other side of it"]
@@ -129,11 +129,13 @@ def remedies(shortfall: Shortfall, reserve_m: float) -> list[str]:
     if shortfall.raise_m is None:
         return ["another outlet or intake: no raise of the ceiling alone makes a route"]
     missing = fixed(math.ceil(100.0 * shortfall.raise_m) / 100.0, 2)
+    level_m = setting.lowest.water_m + shortfall.raise_m
+    above = ", which is above the present level" if level_m > setting.present.water_m else ""
     found = [
         f"a trench {missing} m deep where the ground is too high",
-        f"a lowest level {missing} m higher",
+        f"a lowest level {missing} m higher{above}",
         "a smaller discharge or a larger pipe, as far as losses before the crest are to blame",
     ]
-    if shortfall.raise_m < reserve_m:
+    if shortfall.raise_m < setting.limits.reserve_m:
         found.insert(2, f"{missing} m less reserve, if whoever answers for the design accepts that")
     return found

@@ -1,0 +1,159 @@
+import io
+from dataclasses import replace
+
+import pytest
+from rich.console import Console
+from rich.text import Text
+
+from routing.outputs.cautions import CAUTIONS, INVENTED_PRICES
+from routing.outputs.field import Shown
+from routing.outputs.screen import GRADE_STYLES, MOST_ROWS, scheme_table, shown_text, summary
+from routing.records import GRADES
+
+
+def shown(renderable, width=100, **options):
+    console = Console(file=io.StringIO(), width=width, **options)
+    console.print(renderable)
+    return console.file.getvalue()
+
+
+def flat(text):
+    return " ".join(text.split())
+
+
+@pytest.fixture
+def screen(plan):
+    return shown(summary(plan))
+
+
+def test_it_fits_100_columns(screen, make):
+    for text in (screen, shown(summary(make.no_route()))):
+        assert max(len(line.rstrip()) for line in text.splitlines()) <= 100
+
+
+def test_the_table_holds_one_line_a_scheme(plan):
+    head, units, *rows = shown(scheme_table(plan)).splitlines()
+    assert head.split()[:4] == ["total", "length", "lift", "reserve"]
+    assert units.split() == ["#", "route", "pipe", "n", "l/s", "m", "m", "m", "EUR", "verdict", "decided", "by"]
+    lines = [row.split() for row in rows]
+    assert len(lines) == 4
+    assert lines[0] == [
+        "1",
+        "R1",
+        "PE",
+        "315",
+        "SDR",
+        "17",
+        "1",
+        "121",
+        "281",
+        "3.72",
+        "2.32",
+        "19,800",
+        "fit",
+        "Crown",
+        "pressure",
+    ]
+    assert lines[3][-7:] == ["306", "7.97", "-0.80", "21,300", "unfit", "Crown", "pressure"]
+
+
+def test_long_names_are_folded_not_cut(plan):
+    best = plan.schemes[0]
+    name = "PE 100 RC SDR 17 DN 315 with a protective coat, coil of 100 m, on stock"
+    wide = replace(plan, schemes=(replace(best, pipe=replace(best.pipe, name=name)),))
+    text = shown(scheme_table(wide))
+    assert max(len(line.rstrip()) for line in text.splitlines()) <= 100
+    assert "…" not in text
+    for word in ("protective", "19,800", "fit", "2.32"):
+        assert word in text
+
+
+def test_names_are_not_read_as_markup(plan):
+    best = plan.schemes[0]
+    name = "[red]PE[/red] [x]"
+    odd = replace(plan, schemes=(replace(best, pipe=replace(best.pipe, name=name)),), warnings=("see [bold]a[/]",))
+    text = shown(summary(odd))
+    assert name in text
+    assert "see [bold]a[/]" in text
+
+
+def test_what_is_said(screen, plan):
+    found = flat(screen)
+    assert plan.site.title in found
+    assert "Limited by energy: 121 l/s a pipe at the lowest level, 133 l/s at the present level." in found
+    assert "Stops when the water is down to 97.80 m: the intake mouth would draw air." in found
+    assert "Proven for the whole DEM." in found
+    assert "1 check not made: Air drawn at the outlet. See checks.csv." in found
+    assert "steel 168.3 x 4: the fall of 8.00 m carries 31 l/s at most" in found
+    assert "the DEM's edge cuts the lake" in found
+    assert "3 assumptions made: listed in run.json." in found
+    assert all(caution in found for caution in CAUTIONS)
+    assert "What would help" not in found
+
+
+def test_a_proof_of_the_window_only_is_not_called_more(plan):
+    found = flat(shown(summary(replace(plan, schemes=plan.schemes[2:]))))
+    assert "Proven for the window read, not for the whole DEM." in found
+
+
+def test_invented_prices_are_marked(plan):
+    assert INVENTED_PRICES in flat(shown(summary(plan)))
+    real = tuple(replace(s, cost=replace(s.cost, invented=False)) for s in plan.schemes)
+    said = replace(plan, schemes=real, site=replace(plan.site, prices=replace(plan.site.prices, invented=False)))
+    assert INVENTED_PRICES not in flat(shown(summary(said)))
+
+
+def test_no_route_says_why_and_what_would_help(make):
+    found = flat(shown(summary(make.no_route())))
+    assert "No route works. The ground is 0.92 m too high for 50 l/s." in found
+    assert "What would help, any one of - a trench 0.92 m deep" in found
+    assert "Limited by" not in found
+
+
+def test_nothing_at_all_is_no_trouble(make):
+    plan = make.plan(schemes=(), shortfalls=(), warnings=(), assumptions=())
+    found = flat(shown(summary(plan)))
+    assert "No route works." in found
+    assert "0 assumptions made" in found
+
+
+def test_long_rankings_are_cut_and_say_so(plan):
+    many = tuple(replace(plan.schemes[0], rank=k + 1) for k in range(MOST_ROWS + 3))
+    cut = replace(plan, schemes=many)
+    assert len(shown(scheme_table(cut)).splitlines()) == 2 + MOST_ROWS
+    assert "and 3 more in schemes.csv" in shown(summary(cut))
+
+
+def test_a_pipe_named_in_its_shortfall_is_not_named_twice(make):
+    plan = make.no_route()
+    short = replace(plan.shortfalls[0], text="PE 250 SDR 17 needs 1.35 m more")
+    assert "PE 250 SDR 17: PE" not in shown(summary(replace(plan, shortfalls=(short,))))
+
+
+def test_verdicts_are_words_with_and_without_colour(plan):
+    plain = shown(summary(plan))
+    coloured = shown(summary(plan), force_terminal=True, color_system="standard", legacy_windows=False, _environ={})
+    assert "\x1b" not in plain
+    assert "\x1b[1;34mfit" in coloured
+    assert Text.from_ansi(coloured).plain.split() == plain.split()
+
+
+def test_verdict_colours_differ_and_are_not_red_and_green():
+    assert set(GRADE_STYLES) == set(GRADES)
+    assert len(set(GRADE_STYLES.values())) == 3
+    assert not any("red" in style or "green" in style for style in GRADE_STYLES.values())
+
+
+@pytest.mark.parametrize(
+    ("how", "value", "expected"),
+    [
+        (Shown("x", "l/s", 1e3, "three figures"), 0.0123456, "12.3"),
+        (Shown("x", style="two"), -0.8049, "-0.80"),
+        (Shown("x", style="whole"), 1234.5678, "1,235"),
+        (Shown("x", style="count"), 3, "3"),
+        (Shown("x"), "R1", "R1"),
+        (Shown("x"), None, "-"),
+    ],
+)
+def test_cells(how, value, expected):
+    assert shown_text(how, value) == expected
