@@ -6,7 +6,7 @@ from collections.abc import Iterator
 
 from routing.records import Pipe
 from routing.site.fields import number_text
-from routing.site.models import AirModel, LimitsModel, LossesModel, SiteModel, WaterModel
+from routing.site.models import AirModel, LimitsModel, LossesModel, PipeModel, SiteModel, WaterModel
 from routing.site.pipes import DEFAULT_POISSON_RATIO
 
 
@@ -96,23 +96,31 @@ def _prices(model: SiteModel) -> Iterator[str]:
         yield "The currency of the prices is not stated (prices.currency)."
     if not model.prices.date:
         yield "The date of the prices is not stated (prices.date)."
-    for number, pipe in enumerate(model.pipes, start=1):
-        for name in ("laying_per_m", "fixed_each"):
-            if getattr(pipe, name) is None:
-                yield f"pipes[{number}]: {name} is not given and counts as 0."
+    for name in ("laying_per_m", "fixed_each"):
+        without = [str(number) for number, pipe in enumerate(model.pipes, start=1) if getattr(pipe, name) is None]
+        if without:
+            yield f"pipes {', '.join(without)}: {name} is not given and counts as 0."
 
 
 def _pipes(model: SiteModel, pipes: tuple[Pipe, ...]) -> Iterator[str]:
+    """Say what was taken for the pipes, each thing once with the pipes that it holds for."""
+    numbers: dict[str, list[int]] = {}
     for number, (asked, pipe) in enumerate(zip(model.pipes, pipes, strict=True), start=1):
-        label = f"pipes[{number}] ({pipe.name})"
-        own = asked.table is None
-        if asked.ovality_pct is None:
-            yield f"{label}: out-of-roundness is taken as {number_text(pipe.ovality_pct)} % (ovality_pct)."
-        if own and asked.least_wall_mm is None:
-            yield f"{label}: the thinnest wall is taken to be the mean wall (least_wall_mm)."
-        if own and asked.modulus_mpa is None:
-            yield f"{label}: no modulus is given, so collapse cannot be checked (modulus_mpa)."
-        if own and asked.poisson_ratio is None:
-            yield f"{label}: Poisson's ratio is taken as {number_text(DEFAULT_POISSON_RATIO)} (poisson_ratio)."
-        if asked.table == "ISO 4427" and asked.material is None:
-            yield f"{label}: the material is taken to be PE100 (material)."
+        for sentence in _pipe(asked, pipe):
+            numbers.setdefault(sentence, []).append(number)
+    for sentence, holds in numbers.items():
+        yield f"pipes {', '.join(map(str, holds))}: {sentence}"
+
+
+def _pipe(asked: PipeModel, pipe: Pipe) -> Iterator[str]:
+    own = asked.table is None
+    if asked.ovality_pct is None:
+        yield f"Out-of-roundness is taken as {number_text(pipe.ovality_pct)} % (ovality_pct)."
+    if own and asked.least_wall_mm is None:
+        yield "The thinnest wall is taken to be the mean wall (least_wall_mm)."
+    if own and asked.modulus_mpa is None:
+        yield "No modulus is given, so collapse cannot be checked (modulus_mpa)."
+    if own and asked.poisson_ratio is None:
+        yield f"Poisson's ratio is taken as {number_text(DEFAULT_POISSON_RATIO)} (poisson_ratio)."
+    if asked.table == "ISO 4427" and asked.material is None:
+        yield "The material is taken to be PE100 (material)."

@@ -10,7 +10,7 @@ from pathlib import Path
 from typing import Any
 
 from routing.site.fields import default_of
-from routing.site.models import SECTIONS
+from routing.site.models import SECTIONS, SiteModel
 
 
 class Draft:
@@ -33,7 +33,7 @@ class Draft:
         self.sections: list[str] = []
         for section, model in SECTIONS.items():
             tables = _tables(section, raw.get(section))
-            if section not in raw and not any(info.is_required() for info in model.model_fields.values()):
+            if section not in raw and not SiteModel.model_fields[section].is_required():
                 tables = {section: {}}
             for prefix, table in tables.items():
                 self.sections.append(prefix)

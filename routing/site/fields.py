@@ -15,6 +15,10 @@ _TYPE_WORDS = {float: "a number", int: "a whole number", bool: "true or false", 
 _BOUNDS = {"ge": "at least", "gt": "above", "le": "at most", "lt": "below"}
 
 
+#: A value is told up to this many characters.
+_LONGEST = 160
+
+
 class Section(BaseModel):
     """A table of the site file: unknown keys refused, nothing converted, no NaN and no infinity."""
 
@@ -79,7 +83,12 @@ def choices_of(info: FieldInfo) -> tuple[Any, ...]:
 
 
 def value_text(value: Any) -> str:
-    """Return a value as it would stand in the site file."""
+    """Return a value as it would stand in the site file, cut where it is long."""
+    text = _value_text(value)
+    return text if len(text) <= _LONGEST else f"{text[:_LONGEST]}..."
+
+
+def _value_text(value: Any) -> str:
     if isinstance(value, bool):
         return "true" if value else "false"
     if isinstance(value, str):

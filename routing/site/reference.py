@@ -71,7 +71,7 @@ def reference_page() -> str:
     parts = [_TOP, _section_text("", {"title": SiteModel.model_fields["title"]}, "Top of the file")]
     for name, model in SECTIONS.items():
         head = f"`[[{name}]]`" if name == "pipes" else f"`[{name}]`"
-        meaning = " ".join((model.__doc__ or "").split())
+        meaning = " ".join((model.__doc__ or "").replace("``", "`").split())
         parts.append(_section_text(f"{meaning}\n", model.model_fields, head))
         if name in _NOTES:
             parts.append(_NOTES[name])

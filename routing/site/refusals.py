@@ -35,8 +35,10 @@ _SLIPS: dict[str, tuple[tuple[str, Callable[[float], float]], ...]] = {
     "°C": (("kelvins", lambda v: v - 273.15), ("degrees Fahrenheit", lambda v: (v - 32.0) / 1.8)),
     "m³/s": (("litres a second", lambda v: v / 1000.0),),
     "MPa": (("pascals", lambda v: v / 1e6), ("gigapascals", lambda v: v * 1000.0)),
-    "m": (("millimetres", lambda v: v / 1000.0),),
 }
+
+#: Whole numbers in TOML have no end; beyond this they do not go into a float.
+_HUGE = 1e300
 
 Loc = tuple[int | str, ...]
 
@@ -173,7 +175,7 @@ def _unquote_remedy(info: FieldInfo, value: str) -> str:
 
 def _slips(info: FieldInfo, value: Any) -> Iterator[str]:
     """Yield guesses at a slip of unit: those that bring the value into its range."""
-    if isinstance(value, bool) or not isinstance(value, int | float) or value == 0:
+    if isinstance(value, bool) or not isinstance(value, int | float) or not 0 < abs(value) < _HUGE:
         return
     bounds = bounds_of(info)
     low = bounds.get("ge", bounds.get("gt", float("-inf")))

@@ -8,7 +8,8 @@ from pathlib import Path
 
 from routing.records import TerrainFacts
 
-_KNOWN_UNITS = {"m": "m", "metre": "m", "meter": "m", "ft": "ft", "foot": "ft", "us-ft": "us-ft"}
+#: How the reader of DEMs says that a DEM does not say something.
+_UNKNOWN = {"", "unknown", "not stated"}
 
 _TEXT = """\
 # Site file for a siphon over a dam or ridge. Text after '#' is a comment.
@@ -173,17 +174,16 @@ def _span(facts: TerrainFacts, axis: int) -> str:
 
 
 def _unit_line(facts: TerrainFacts) -> str:
-    unit = _KNOWN_UNITS.get(facts.vertical_unit)
-    if unit is None:
+    if facts.vertical_unit in _UNKNOWN:
         return (
             '# REQUIRED: the DEM does not say in what unit its elevations are; write "m", "ft" or "us-ft"\n'
             '# vertical_unit = "m"'
         )
-    source = _plain(facts.vertical_unit_source)
+    unit, source = _plain(facts.vertical_unit), _plain(facts.vertical_unit_source)
     return f'# vertical_unit = "{unit}"          # as the DEM says' + (f" ({source})" if source else "")
 
 
 def _datum_line(facts: TerrainFacts) -> str:
-    if facts.vertical_datum and facts.vertical_datum != "unknown":
-        return f"vertical_datum = {_quoted(facts.vertical_datum)}  # as the DEM says"
+    if facts.vertical_datum not in _UNKNOWN:
+        return f"# vertical_datum = {_quoted(facts.vertical_datum)}  # as the DEM says"
     return '# vertical_datum = "..."       # the DEM does not name one'

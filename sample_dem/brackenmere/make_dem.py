@@ -16,7 +16,7 @@ from pathlib import Path
 import numpy as np
 import rasterio
 from numpy.typing import NDArray
-from rasterio.transform import from_origin
+from rasterio import Affine
 
 Grid = NDArray[np.float64]
 
@@ -104,7 +104,7 @@ def write(target: Path) -> None:
         "height": ROWS,
         "width": COLS,
         "crs": CRS,
-        "transform": from_origin(WEST_M, NORTH_M, CELL_M, CELL_M),
+        "transform": Affine(CELL_M, 0.0, WEST_M, 0.0, -CELL_M, NORTH_M),
         "nodata": -9999.0,
         "compress": "deflate",
         "predictor": 3,

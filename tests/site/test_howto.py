@@ -1,0 +1,49 @@
+"""The how-to page: what it shows is what the program takes and says."""
+
+from __future__ import annotations
+
+import re
+import tomllib
+from pathlib import Path
+
+import pytest
+
+from routing.errors import SiteError
+from routing.site import load_site
+from routing.site.models import SECTIONS
+
+PAGE = (Path(__file__).resolve().parents[2] / "docs" / "howto" / "site-file.md").read_text(encoding="utf-8")
+TOML = re.findall(r"^```toml\n(.*?)^```", PAGE, flags=re.DOTALL | re.MULTILINE)
+LEAST, POINTS, PIPES, PRICES = TOML
+
+
+def test_the_least_file_loads(make):
+    assert load_site(make(text=LEAST)).pipes[0].name == "PE100 315 SDR 17"
+
+
+def test_the_parts_fit_into_it(make):
+    ends = LEAST[LEAST.index("[intake]") : LEAST.index("[[pipes]]")]
+    path = make((ends, POINTS + "\n" + PRICES + "\n"), (LEAST[LEAST.index("[[pipes]]") :], PIPES), text=LEAST)
+    (path.parent / "points.gpkg").touch()
+    site = load_site(path)
+    assert len(site.pipes) == 3
+    assert site.prices.date == "2026-01-31"
+
+
+def test_the_message_is_the_real_one(make):
+    (shown,) = re.findall(r"^```text\n(.*?)^```", PAGE, flags=re.DOTALL | re.MULTILINE)
+    path = make(("lowest_level_m = 98.8", "lowest_level_m = 98.8\ntemperature_c = 283"), text=LEAST)
+    with pytest.raises(SiteError) as caught:
+        load_site(path)
+    assert str(caught.value).replace(str(path), "site.toml") == shown.strip()
+
+
+def test_every_key_that_the_page_names_exists():
+    keys = {f"{section}.{name}" for section, model in SECTIONS.items() for name in model.model_fields}
+    names = {key.partition(".")[2] for key in keys}
+    for dotted in re.findall(r"`([a-z]+\.[a-z][a-z0-9_]+)(?: = [^`]*)?`", PAGE):
+        assert dotted in keys or dotted == "site.toml", dotted
+    for bare in re.findall(r"`([a-z]+(?:_[a-z0-9]+)+)`", PAGE):
+        assert bare in names, bare
+    for block in TOML:
+        assert set(tomllib.loads(block)) <= set(SECTIONS)
