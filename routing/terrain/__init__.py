@@ -9,7 +9,7 @@ from routing.terrain.placing import place_point
 from routing.terrain.reading import Dem, inspect, open_dem
 from routing.terrain.sampling import SampleState, cell_at, rowcol_of, sample, sample_rowcol, xy_of
 from routing.terrain.sections import ground_along, long_section
-from routing.terrain.shores import cells_area_m2, shoreline_of, water_body_from_polygon
+from routing.terrain.shores import cells_area_m2, share_above_level, shoreline_of, water_body_from_polygon
 from routing.terrain.vectors import LayerAsk, read_geometries
 from routing.terrain.water import dry_cell, water_body, water_cells, with_voids_as_water
 
@@ -33,6 +33,7 @@ __all__ = [
     "rowcol_of",
     "sample",
     "sample_rowcol",
+    "share_above_level",
     "shoreline_of",
     "water_body",
     "water_body_from_polygon",

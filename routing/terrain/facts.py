@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import hashlib
+from collections.abc import Sequence
 from dataclasses import dataclass
 from pathlib import Path
 from typing import Any
@@ -63,7 +64,8 @@ def understand(dataset: Any, ask: TerrainAsk, teller: Teller, *, unit_needed: bo
     part = vertical_part(full_crs) if full_crs is not None else None
     unit = settle_unit(_units_said(dataset, ask, part), teller, needed=unit_needed)
     datum, datum_notes = _datum(ask, part, teller)
-    digest, digest_notes = fingerprint(ask.file)
+    sources = [Path(name) for name in dataset.files] if dataset.driver == "VRT" else []
+    digest, digest_notes = fingerprint(ask.file, sources)
     facts = TerrainFacts(
         file=str(ask.file),
         sha256=digest,
@@ -95,26 +97,28 @@ def understand(dataset: Any, ask: TerrainAsk, teller: Teller, *, unit_needed: bo
     return Understood(facts, plan, geodetic_of(plan), grid)
 
 
-def fingerprint(file: Path) -> tuple[str, tuple[str, ...]]:
+def fingerprint(file: Path, sources: Sequence[Path] = ()) -> tuple[str, tuple[str, ...]]:
     """Return a SHA-256 that tells whether the DEM is still the same, and a note where it is not the file's own.
 
     Parameters
     ----------
     file
         The DEM. Up to 256 MB its content is hashed; beyond, and for anything that is not one plain file,
-        size, time of change and the first megabyte.
+        name, size, time of change and the first megabyte.
+    sources
+        Files that it only points to (a VRT), to be covered too.
     """
-    if file.is_file() and file.stat().st_size <= LARGEST_HASHED_FILE:
+    if not sources and file.is_file() and file.stat().st_size <= LARGEST_HASHED_FILE:
         with file.open("rb") as stream:
             return hashlib.file_digest(stream, "sha256").hexdigest(), ()
-    digest = hashlib.sha256(str(file.name).encode())
-    parts = [file] if file.is_file() else sorted(p for p in file.glob("**/*") if p.is_file()) if file.is_dir() else []
-    for part in parts:
+    inside = file.glob("**/*") if file.is_dir() else [file, *sources]
+    digest = hashlib.sha256(file.name.encode())
+    for part in sorted({one for one in inside if one.is_file()}):
         state = part.stat()
         digest.update(f"{part.name} {state.st_size} {state.st_mtime_ns}".encode())
         with part.open("rb") as stream:
             digest.update(stream.read(_HEADER_BYTES))
-    note = f"The hash of {file.name} covers name, size, time of change and beginning, not the whole content."
+    note = f"The hash of {file.name} covers names, sizes, times of change and beginnings, not the whole content."
     return digest.hexdigest(), (note,)
 
 

@@ -67,6 +67,27 @@ def water_body_from_polygon(terrain: Terrain, layer: LayerAsk, level_m: float, i
     )
 
 
+def share_above_level(terrain: Terrain, body: WaterBody) -> float:
+    """Return which share of a body's cells holds ground above its level: much of it means a wrong level or polygon.
+
+    Parameters
+    ----------
+    terrain
+        Ground of the window.
+    body
+        Its water body.
+    """
+    held = body.cells & terrain.valid
+    if not held.any():
+        return 0.0
+    return float(np.mean(terrain.elevation_m[held] > body.level_m + level_slack_m(body.level_m)))
+
+
+def level_slack_m(level_m: float) -> float:
+    """Return the rounding of a level stored as a 4-byte float: cells that near a water surface belong to it."""
+    return float(np.spacing(np.float32(abs(level_m))))
+
+
 def cells_area_m2(terrain: Terrain, cells: BoolArray) -> float:
     """Return the ground area of cells, from the ground steps of their rows."""
     return float(np.sum(cells.sum(axis=1) * terrain.step_x_m * terrain.step_y_m))

@@ -8,7 +8,7 @@ import numpy as np
 
 from routing.errors import Problem, TerrainError
 from routing.records import BoolArray, Cell, Terrain, WaterBody
-from routing.terrain.shores import cells_area_m2, shoreline_of, touched_borders
+from routing.terrain.shores import cells_area_m2, level_slack_m, shoreline_of, touched_borders
 
 _EIGHT = np.ones((3, 3), dtype=np.bool_)
 
@@ -20,11 +20,6 @@ class _Flood:
     cells: BoolArray
     voids: int
     open_voids: BoolArray
-
-
-def level_slack_m(level_m: float) -> float:
-    """Return the rounding of a level stored as a 4-byte float: cells that near a water surface belong to it."""
-    return float(np.spacing(np.float32(abs(level_m))))
 
 
 def dry_cell(terrain: Terrain, cell: Cell, level_m: float) -> bool:

@@ -41,11 +41,15 @@ class Wgs84:
     def of(self, x: float, y: float) -> tuple[float, float]:
         """Return longitude and latitude of a map position (infinite where there is none)."""
         lon, lat = self._transformer.transform(x, y)
-        return float(lon), float(lat)
+        # A DEM whose longitudes run from 0 to 360 is legal; positions are told from -180 to 180.
+        return float(lon) if abs(lon) <= 180.0 else _turned(float(lon), 0.0), float(lat)
 
     def back(self, lon: float, lat: float) -> tuple[float, float]:
         """Return the map position of a longitude and latitude (infinite where there is none)."""
         x, y = self._transformer.transform(lon, lat, direction="INVERSE")
+        if self._crs.is_geographic and self._geodetic.degrees_per_unit == 1.0:
+            west, _, east, _ = self._bounds
+            return float(x) if west <= x <= east else _turned(float(x), 0.5 * (west + east)), float(y)
         return float(x), float(y)
 
     def bounds(self) -> Bounds:
@@ -67,3 +71,8 @@ class Wgs84:
             return ()
         known = f"good to {used.accuracy:g} m" if used.accuracy is not None and used.accuracy >= 0.0 else "not rated"
         return (f"WGS 84 positions are told from {self._crs.name} by {used.description!r}, {known}.",)
+
+
+def _turned(degrees: float, middle: float) -> float:
+    """Return the same longitude, counted by whole turns as near to a middle as can be."""
+    return degrees + 360.0 * round((middle - degrees) / 360.0) if math.isfinite(degrees) else degrees
