@@ -1,1 +1,20 @@
-"""Room: schemes."""
+"""Room: schemes. Route x pipe x count: appraisal, cost, verdict, order."""
+
+from routing.schemes.appraising import Conditions, appraise, crown_offset_m, high_points_m
+from routing.schemes.costing import price_scheme
+from routing.schemes.judging import NOT_MADE, Matter, judge, list_checks, worst_of
+from routing.schemes.ranking import rank
+
+__all__ = [
+    "NOT_MADE",
+    "Conditions",
+    "Matter",
+    "appraise",
+    "crown_offset_m",
+    "high_points_m",
+    "judge",
+    "list_checks",
+    "price_scheme",
+    "rank",
+    "worst_of",
+]

@@ -1,0 +1,33 @@
+"""What a scheme costs, by the user's price list: every total is the sum of its lines."""
+
+from __future__ import annotations
+
+from routing.records import Cost, CostLine, Pipe, PriceList
+
+
+def price_scheme(pipe: Pipe, length_m: float, count: int, prices: PriceList) -> Cost:
+    """Price a number of parallel pipes of one length.
+
+    Parameters
+    ----------
+    pipe
+        The pipe, with its prices.
+    length_m
+        Length of one pipe, along the slope.
+    count
+        Number of parallel pipes.
+    prices
+        What the prices mean, and the fixed sum of a scheme.
+    """
+    metres = length_m * count
+    rows = (
+        ("pipe supplied", metres, "m", pipe.prices.supply_per_m),
+        ("pipe laid", metres, "m", pipe.prices.laying_per_m),
+        ("fixed items of each pipe", float(count), "pipe", pipe.prices.fixed_each),
+        ("fixed items of the scheme", 1.0, "scheme", prices.fixed_per_scheme),
+    )
+    lines = tuple(
+        CostLine(text, quantity, unit, rate, quantity * rate) for text, quantity, unit, rate in rows if rate != 0.0
+    )
+    total = sum(line.amount for line in lines)
+    return Cost(lines, float(total), prices.currency, prices.date, prices.invented)
