@@ -19,18 +19,20 @@ from routing.outputs.values import Value, clean
 from routing.outputs.wording import best_scheme, counted, figures, fixed, headline, least_shortfall, litres, remedies
 from routing.records import Grade, Plan, Scheme
 
-#: Rows of the table; the rest is in ``schemes.csv``.
+#: Rows of the table where nothing else is asked; the rest is in ``schemes.csv``.
 MOST_ROWS = 12
 GRADE_STYLES: dict[Grade, str] = {"fit": "bold blue", "caution": "bold yellow", "unfit": "bold magenta"}
 
 
-def summary(plan: Plan) -> RenderableType:
+def summary(plan: Plan, *, top: int = MOST_ROWS) -> RenderableType:
     """Return what the terminal shows of a plan, made to fit 100 columns.
 
     Parameters
     ----------
     plan
         What was planned.
+    top
+        Most schemes to show.
 
     Returns
     -------
@@ -40,7 +42,7 @@ def summary(plan: Plan) -> RenderableType:
     parts: list[RenderableType] = [heading(plan.site.title)] if plan.site.title else []
     parts += [Text(headline(plan))]
     if plan.schemes:
-        parts += ["", scheme_table(plan), *_table_notes(plan)]
+        parts += ["", scheme_table(plan, top), *_table_notes(plan, top)]
     best = best_scheme(plan)
     if best is not None:
         parts += ["", heading(f"Scheme {best.rank}"), bullets(_best_notes(best))]
@@ -51,8 +53,8 @@ def summary(plan: Plan) -> RenderableType:
     return Group(*parts, "", heading("Cautions"), bullets(CAUTIONS), "", Text(made))
 
 
-def scheme_table(plan: Plan) -> Table:
-    """Return the ranked table of schemes."""
+def scheme_table(plan: Plan, top: int = MOST_ROWS) -> Table:
+    """Return the ranked table of the first ``top`` schemes."""
     table = Table(box=None, pad_edge=False, padding=(0, 2, 0, 0), header_style="bold")
     shown = [(field, field.shown) for field in SCHEME_FIELDS if field.shown is not None]
     for field, how in shown:
@@ -66,7 +68,7 @@ def scheme_table(plan: Plan) -> Table:
         )
     table.add_column("verdict", no_wrap=True)
     table.add_column("decided by", overflow="fold")
-    for scheme in plan.schemes[:MOST_ROWS]:
+    for scheme in plan.schemes[:top]:
         cells = [Text(shown_text(how, clean(field.get(plan, scheme)))) for field, how in shown]
         grade = Text(scheme.verdict.grade, style=GRADE_STYLES[scheme.verdict.grade])
         table.add_row(*cells, grade, Text(scheme.verdict.governing.title))
@@ -85,10 +87,10 @@ def shown_text(how: Shown, value: Value) -> str:
     return fixed(scaled, 2 if how.style == "two" else 0)
 
 
-def _table_notes(plan: Plan) -> list[RenderableType]:
+def _table_notes(plan: Plan, top: int) -> list[RenderableType]:
     found: list[RenderableType] = []
-    if len(plan.schemes) > MOST_ROWS:
-        found.append(Text(f"and {len(plan.schemes) - MOST_ROWS} more in schemes.csv", style="dim"))
+    if len(plan.schemes) > top:
+        found.append(Text(f"and {len(plan.schemes) - top} more in schemes.csv", style="dim"))
     if prices_invented(plan):
         found.append(Text(INVENTED_PRICES, style="bold"))
     return found
