@@ -13,6 +13,8 @@ from routing.records import FloatArray, Pipe, Water
 #: The laminar side of the jump is approached to this relative distance, so that a Reynolds number formed again
 #: from the result does not round to the turbulent side.
 _JUMP_SIDE = 1.0 - 1e-12
+#: Below this Reynolds number water counts as still: 64/Re would overflow, and nothing is lost that could be told.
+_STILL_REYNOLDS = 1e-100
 _TWO_OVER_LN10 = 2.0 / math.log(10.0)
 _STEPS = 60
 _STOP = 1e-15
@@ -58,11 +60,11 @@ class Conduit:
 
     def factor(self, velocity_ms: float) -> float:
         """Return the Darcy factor; 0 in still water, where it has no meaning. A fixed factor holds at any velocity."""
-        if velocity_ms <= 0.0:
+        reynolds = self.reynolds(velocity_ms)
+        if reynolds <= _STILL_REYNOLDS:
             return 0.0
         if self.fixed_factor is not None:
             return self.fixed_factor
-        reynolds = self.reynolds(velocity_ms)
         if reynolds <= CRITICAL_REYNOLDS:
             return 64.0 / reynolds
         x = colebrook_x(reynolds, self.relative_roughness)

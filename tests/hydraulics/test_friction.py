@@ -14,7 +14,7 @@ TURBULENT = st.floats(2041.0, 1e10)
 ROUGHNESS = st.floats(0.0, 0.1)
 
 
-@settings(max_examples=200, deadline=None)
+@settings(max_examples=200)
 @given(TURBULENT, ROUGHNESS)
 def test_result_satisfies_the_implicit_equation_to_rounding(reynolds, roughness):
     x = 1.0 / math.sqrt(darcy_factor(reynolds, roughness))
@@ -22,7 +22,7 @@ def test_result_satisfies_the_implicit_equation_to_rounding(reynolds, roughness)
     assert x + 2.0 * math.log10(roughness / 3.7 + 2.51 * x / reynolds) == pytest.approx(0.0, abs=4e-14)
 
 
-@settings(max_examples=100, deadline=None)
+@settings(max_examples=100)
 @given(TURBULENT, ROUGHNESS, st.floats(1.001, 10.0))
 def test_factor_falls_with_reynolds_and_rises_with_roughness(reynolds, roughness, ratio):
     assert darcy_factor(reynolds * ratio, roughness) <= darcy_factor(reynolds, roughness)
@@ -32,7 +32,7 @@ def test_factor_falls_with_reynolds_and_rises_with_roughness(reynolds, roughness
     assert darcy_factor(reynolds * ratio, roughness) * ratio**2 > darcy_factor(reynolds, roughness)
 
 
-@settings(max_examples=50, deadline=None)
+@settings(max_examples=50)
 @given(st.lists(st.floats(1.0, 1e9), min_size=1, max_size=20), ROUGHNESS)
 def test_arrays_equal_scalars(reynolds, roughness):
     found = darcy_factor(np.array(reynolds), roughness)

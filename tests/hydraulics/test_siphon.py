@@ -270,6 +270,14 @@ def test_still_water_behind_a_shut_valve():
     assert state.crown_pressure_pa[1] == pytest.approx(98_000 - 3 * WATER.density_kgm3 * 9.80665)
 
 
+@pytest.mark.parametrize("discharge", [5e-324, 1e-310, 1e-200, 1e-30])
+def test_next_to_nothing_is_still_water_in_all_but_name(discharge):
+    still, state = run_at(*BASE, 0.0), run_at(*BASE, discharge)
+    np.testing.assert_allclose(state.crown_pressure_pa, still.crown_pressure_pa, rtol=1e-12)
+    assert state.reserve_left_m == pytest.approx(still.reserve_left_m)
+    assert state.valve_loss > 1e30
+
+
 def test_more_than_the_fall_carries_is_refused():
     most = run_siphon(*BASE).energy_discharge_m3s
     assert run_at(*BASE, most).discharge_m3s == pytest.approx(most)
