@@ -96,7 +96,7 @@ class WaterModel(Section):
 
 
 class PointModel(Section):
-    """A point: ``x`` and ``y``, or ``lon`` and ``lat``, or ``file``; exactly one of the three ways."""
+    """A point: x and y, or lon and lat, or file; exactly one of the three ways."""
 
     x: float | None = key("easting in the CRS of the DEM", None, unit="unit of the CRS", **ORDINATES)
     y: float | None = key("northing in the CRS of the DEM", None, unit="unit of the CRS", **ORDINATES)
@@ -211,7 +211,7 @@ class SearchModel(Section):
 
 
 class PipeModel(Section):
-    """One pipe size: from a table (``table``), or by its own dimensions."""
+    """One pipe size: from the table of a standard, or by its own dimensions."""
 
     name: str | None = key("name in results", None, otherwise="material and size", min_length=1, max_length=80)
     table: Literal["ISO 4427", "EN 10220"] | None = key(

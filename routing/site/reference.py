@@ -56,8 +56,25 @@ def schema() -> dict[str, Any]:
         of giving a point, and the like) are beyond it; ``load_site`` checks those.
     """
     found = SiteModel.model_json_schema()
-    found["title"] = "Site file"
-    return {"$schema": "https://json-schema.org/draft/2020-12/schema", **found}
+    tables = {name: _plain(table) for name, table in found.pop("$defs").items()}
+    head = {"$schema": "https://json-schema.org/draft/2020-12/schema", "title": "Site file"}
+    return head | _plain(found) | {"$defs": tables}
+
+
+def _plain(table: dict[str, Any]) -> dict[str, Any]:
+    """Return the schema of a table without what TOML does not have (null) and without titles made from names."""
+    keys = {name: _plain_key(info) for name, info in table["properties"].items()}
+    return {name: item for name, item in table.items() if name != "title"} | {"properties": keys}
+
+
+def _plain_key(info: dict[str, Any]) -> dict[str, Any]:
+    plain = {name: item for name, item in info.items() if name not in {"title", "anyOf"}}
+    for choice in info.get("anyOf", ()):
+        if choice != {"type": "null"}:
+            plain |= choice
+    if plain.get("default", "") is None:
+        del plain["default"]
+    return plain
 
 
 def reference_page() -> str:

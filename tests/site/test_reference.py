@@ -56,3 +56,11 @@ def test_the_schema_holds_every_key_with_its_range():
     assert (reserve["minimum"], reserve["maximum"], reserve["default"], reserve["unit"]) == (0, 9, 2.5, "m of water")
     assert found["$defs"]["SearchModel"]["properties"]["neighbours"]["enum"] == [8, 16, 32]
     assert found["properties"]["pipes"]["type"] == "array"
+
+
+def test_the_schema_knows_no_null_since_toml_has_none():
+    text = json.dumps(schema())
+    assert "null" not in text
+    lift = schema()["$defs"]["LimitsModel"]["properties"]["highest_lift_m"]
+    assert (lift["type"], lift["exclusiveMinimum"], lift["maximum"]) == ("number", 0, 10.5)
+    assert "default" not in lift
