@@ -1,0 +1,163 @@
+"""Which routes a pipe has: the one for the largest discharge, the shortest for each duty, or the least bad."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import dataclass, replace
+
+import numpy as np
+
+from routing.planning.benches import Bench
+from routing.records import Appraisal, Pipe, Route, Shortfall
+from routing.schemes import appraise
+from routing.search import Found, Limitation, PathEdges, largest_discharge, least_raise, shortest_path
+
+# Lengths on the graph are a little shorter than the sampled long section; a few rounds settle that.
+_ROUNDS = 5
+_SLACK_M = 1e-6
+
+
+@dataclass(frozen=True, slots=True)
+class Candidate:
+    """A route with a pipe and a count, appraised at its duty."""
+
+    route: Route
+    pipe: Pipe
+    count: int
+    appraisal: Appraisal
+
+
+@dataclass(frozen=True, slots=True)
+class Offer:
+    """What one pipe has to offer: candidates, and what is missing where its demand cannot be met."""
+
+    candidates: tuple[Candidate, ...]
+    shortfall: Shortfall | None
+    proven: bool
+
+
+def _candidate(bench: Bench, pipe: Pipe, path: PathEdges, best: Found, count: int, duty: float | None) -> Candidate:
+    line = bench.section(path)
+    appraisal = appraise(pipe, bench.profile(pipe, line), bench.conditions, duty)
+    return Candidate(bench.route(path, line, best), pipe, count, appraisal)
+
+
+def _carries(candidate: Candidate, duty: float) -> bool:
+    """Whether the appraisal, on the sampled long section, confirms the duty."""
+    appraisal = candidate.appraisal
+    return appraisal.reserve_left_m >= -_SLACK_M and appraisal.largest.energy_discharge_m3s >= duty
+
+
+def _for_duty(bench: Bench, pipe: Pipe, best: Found, count: int, duty: float) -> tuple[Candidate | None, bool]:
+    """Find the shortest route whose sampled long section carries a duty; tell whether it is proven outside."""
+    stretch, proven = 1.0, True
+    for _ in range(_ROUNDS):
+        found = shortest_path(bench.job, bench.limit_at(pipe, duty, stretch))
+        proven = proven and found.proven_outside
+        if found.path is None:
+            break
+        candidate = _candidate(bench, pipe, found.path, best, count, duty)
+        if _carries(candidate, duty):
+            return candidate, proven
+        stretch = max(stretch * 1.001, candidate.route.length_m / found.path.length_m * (1.0 + 1e-9))
+    if best.path is not None:
+        candidate = _candidate(bench, pipe, best.path, best, count, duty)
+        if _carries(candidate, duty):
+            return candidate, proven
+    return None, proven
+
+
+def _words(pipe: Pipe, duty: float | None) -> str:
+    return f"{pipe.name}" if duty is None else f"{pipe.name} at {duty * 1e3:.1f} l/s in each"
+
+
+def _shortfall(pipe: Pipe, duty: float | None, raised: Found, reserve_m: float) -> Shortfall:
+    """Say what would make a route that keeps the suction limit."""
+    if raised.path is None:
+        text = f"{_words(pipe, duty)}: no ground that holds data joins intake and outlet within reach of the fall."
+        return Shortfall(pipe.name, duty, "cut off", None, text)
+    need = raised.high
+    if need <= 0.0:  # the search's own rule is met; the sampled long section misses by a hair
+        need = 0.01
+    ways = f"a trench {need:.2f} m deep where the ground is too high, or a lowest level {need:.2f} m higher"
+    if need <= reserve_m:
+        ways += f", or a reserve {need:.2f} m smaller"
+    text = f"{_words(pipe, duty)}: the ground is too high for the suction limit. What would make a route: {ways}."
+    return Shortfall(pipe.name, duty, "suction", need, text)
+
+
+def _too_weak(pipe: Pipe, duty: float, most: float) -> Shortfall:
+    text = (
+        f"{_words(pipe, duty)}: the fall drives at most {most * 1e3:.1f} l/s through one pipe by any route. What "
+        "would help: a larger bore, more pipes, a lower outlet, or a smaller discharge."
+    )
+    return Shortfall(pipe.name, duty, "energy", None, text)
+
+
+def _least_bad(bench: Bench, pipe: Pipe, best: Found, count: int, duty: float | None) -> Offer:
+    """Offer the route that is nearest to working, and say what is missing."""
+    limitation: Limitation = bench.limit_at(pipe, duty or 0.0)
+    reachable = duty is None or limitation.longest_m > 0.0
+    raised = (
+        least_raise(bench.job, limitation)
+        if reachable
+        else Found(None, np.inf, np.inf, proven_outside=True, searches=0)
+    )
+    reserve = bench.setting.limits.reserve_m
+    if raised.path is not None:
+        figures = replace(best, proven_outside=raised.proven_outside)
+        candidate = _candidate(bench, pipe, raised.path, figures, count, duty)
+        return Offer((candidate,), _shortfall(pipe, duty, raised, reserve), raised.proven_outside)
+    if duty is not None:  # more than the fall drives at any length: look at still water instead
+        still = best if best.path is not None else least_raise(bench.job, bench.limit_at(pipe, 0.0))
+        if still.path is not None:
+            most = bench.flow(pipe).carried_at_length(still.path.length_m)
+            figures = replace(best, proven_outside=still.proven_outside)
+            candidate = _candidate(bench, pipe, still.path, figures, count, duty)
+            shortfall = _too_weak(pipe, duty, most)
+            if best.path is None:
+                shortfall = replace(_shortfall(pipe, duty, still, reserve), text=_both(pipe, duty, still, most))
+            return Offer((candidate,), shortfall, still.proven_outside)
+    return Offer((), _shortfall(pipe, duty, raised, reserve), raised.proven_outside)
+
+
+def _both(pipe: Pipe, duty: float, still: Found, most: float) -> str:
+    return (
+        f"{_words(pipe, duty)}: the ground is too high by {still.high:.2f} m even for still water, and the fall drives "
+        f"at most {most * 1e3:.1f} l/s through one pipe."
+    )
+
+
+def _counts(bench: Bench) -> Iterator[tuple[int, float]]:
+    required = bench.site.demand.discharge_m3s
+    if required is not None:
+        for count in range(1, bench.site.demand.most_pipes + 1):
+            yield count, required / count
+
+
+def offer_of(bench: Bench, pipe: Pipe) -> Offer:
+    """Find every route that a pipe has to offer.
+
+    Where a discharge is asked: the shortest route for each number of pipes that can carry it. Where none is
+    asked: the route that carries most. Where neither works: the least bad, with what is missing.
+    """
+    best = largest_discharge(bench.job, bench.flow(pipe), tolerance=bench.site.search.tolerance)
+    asked = bench.site.demand.discharge_m3s
+    if asked is None:
+        if best.path is None or best.low <= 0.0:
+            offer = _least_bad(bench, pipe, best, 1, None)
+            return replace(offer, proven=offer.proven and best.proven_outside)
+        return Offer((_candidate(bench, pipe, best.path, best, 1, None),), None, best.proven_outside)
+    found, proven = [], best.proven_outside
+    for count, duty in _counts(bench):
+        if best.path is None or duty > best.high * (1.0 + bench.site.search.tolerance):
+            continue
+        candidate, outside = _for_duty(bench, pipe, best, count, duty)
+        proven = proven and outside
+        if candidate is not None:
+            found.append(candidate)
+    if found:
+        return Offer(tuple(found), None, proven)
+    most_pipes = bench.site.demand.most_pipes
+    offer = _least_bad(bench, pipe, best, most_pipes, asked / most_pipes)
+    return replace(offer, proven=offer.proven and proven)

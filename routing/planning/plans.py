@@ -1,0 +1,206 @@
+"""`plan` and `look`: site in, answer out. The one place that joins the rooms."""
+
+from __future__ import annotations
+
+from contextlib import ExitStack
+from dataclasses import dataclass
+from pathlib import Path
+
+import numpy as np
+
+from routing.planning.benches import Bench
+from routing.planning.candidates import Candidate, Offer, offer_of
+from routing.planning.hollows import hollow_note
+from routing.planning.reports import Progress, Reporter, reporter
+from routing.planning.scenes import Scene, first_window, grown_window, place_ends, survey
+from routing.planning.settings import resolve
+from routing.records import Outlook, Plan, Scheme, Setting, Site, TerrainFacts
+from routing.schemes import Matter, judge, price_scheme, rank
+from routing.terrain import inspect, open_dem
+
+
+def inspect_dem(path: Path) -> TerrainFacts:
+    """Return what a DEM says of itself, before there is a site file.
+
+    Raises
+    ------
+    TerrainError
+        If the file cannot be read as a DEM.
+    """
+    return inspect(path)
+
+
+def _assumptions(site: Site, scene: Scene, setting: Setting) -> tuple[str, ...]:
+    listed = (*site.assumptions, *scene.terrain.facts.assumptions, *setting.assumptions)
+    return tuple(dict.fromkeys(listed))
+
+
+def look(site: Site, progress: Progress | None = None) -> Outlook:
+    """Say what is understood of a site before anything is planned.
+
+    Parameters
+    ----------
+    site
+        The checked site file.
+    progress
+        Called with stage and share; may raise to stop.
+
+    Returns
+    -------
+    Outlook
+
+    Raises
+    ------
+    SiteError
+        If site file and DEM do not fit each other.
+    TerrainError
+        If the DEM cannot serve.
+    """
+    report = reporter(progress)
+    with open_dem(site.terrain, site.lines, site.file) as dem:
+        ends = place_ends(site, dem)
+        scene = survey(site, dem, ends, first_window(dem, ends), report)
+        setting = resolve(site, scene)
+    terrain = scene.terrain
+    levels = terrain.elevation_m[terrain.valid]
+    return Outlook(
+        site=site,
+        terrain=terrain,
+        water_body=scene.body,
+        lowest_crest=scene.crest,
+        setting=setting,
+        nodata_share=1.0 - float(np.mean(terrain.valid)),
+        elevation_range_m=(float(levels.min()), float(levels.max())),
+        flat_water_level_m=None if scene.flat is None else scene.flat.level_m,
+        assumptions=_assumptions(site, scene, setting),
+        warnings=(*scene.warnings, *hollow_note(scene, setting)),
+    )
+
+
+@dataclass(frozen=True, slots=True)
+class _Survey:
+    scene: Scene
+    setting: Setting
+    offers: tuple[Offer, ...]
+
+    @property
+    def proven(self) -> bool:
+        return all(offer.proven for offer in self.offers)
+
+
+def _search(site: Site, scene: Scene, report: Reporter) -> _Survey:
+    """Search one window for every pipe."""
+    setting = resolve(site, scene)
+    offers = []
+    names: dict[bytes, str] = {}
+    for number, pipe in enumerate(site.pipes, start=1):
+        with ExitStack() as stack:
+            name = f"routes for pipe {number} of {len(site.pipes)}"
+            tick = stack.enter_context(report.stage(name, scene.terrain.elevation_m.size))
+            offers.append(offer_of(Bench(site, scene, setting, tick, names), pipe))
+    return _Survey(scene, setting, tuple(offers))
+
+
+def _surveyed(site: Site, report: Reporter) -> _Survey:
+    """Search windows of growing size until every answer is proven for the whole DEM, or no more can be read."""
+    with open_dem(site.terrain, site.lines, site.file) as dem:
+        ends = place_ends(site, dem)
+        window = first_window(dem, ends)
+        while True:
+            scene = survey(site, dem, ends, window, report)
+            found = _search(site, scene, report)
+            larger = None if found.proven else grown_window(site, dem, scene.terrain.window)
+            if larger is None:
+                return found
+            window = larger
+
+
+def _barrier_cells(scene: Scene, candidate: Candidate) -> float:
+    """Width of the ground above the present level at the route's highest place, in cells."""
+    route = candidate.route
+    above = route.ground_m > scene.present_m
+    crest = route.crest_index
+    if not above[crest]:
+        return 0.0
+    low = np.flatnonzero(~above)
+    first = low[low < crest].max(initial=0)
+    last = low[low > crest].min(initial=above.size - 1)
+    cell = 0.5 * float(scene.terrain.step_x_m.mean() + scene.terrain.step_y_m.mean())
+    return float(route.chainage_m[last] - route.chainage_m[first]) / cell
+
+
+def _scheme(survey_: _Survey, bench: Bench, candidate: Candidate) -> Scheme:
+    site, scene = bench.site, survey_.scene
+    cost = price_scheme(candidate.pipe, candidate.route.length_m, candidate.count, site.prices)
+    verdict = judge(
+        Matter(
+            pipe=candidate.pipe,
+            count=candidate.count,
+            appraisal=candidate.appraisal,
+            cost=cost,
+            conditions=bench.conditions,
+            required_m3s=site.demand.discharge_m3s,
+            budget=site.demand.budget,
+            vertical_error_m=scene.terrain.facts.vertical_error_m,
+            surface=scene.terrain.facts.surface,
+            barrier_cells=_barrier_cells(scene, candidate),
+        )
+    )
+    return Scheme(0, candidate.route, candidate.pipe, candidate.count, candidate.appraisal, cost, verdict)
+
+
+def _proof_warnings(survey_: _Survey) -> tuple[str, ...]:
+    if survey_.proven:
+        return ()
+    window = survey_.scene.terrain.window
+    return (
+        (
+            f"The routes are proven only inside the {window.rows} x {window.cols} cells that were read; a better one might "
+            "run outside. Raise search.largest_window_cells to look further."
+        ),
+    )
+
+
+def plan(site: Site, progress: Progress | None = None) -> Plan:
+    """Find, prove, appraise, price and rank the schemes of a site.
+
+    Parameters
+    ----------
+    site
+        The checked site file (`routing.load_site`).
+    progress
+        Called with stage and share; may raise to stop.
+
+    Returns
+    -------
+    Plan
+        With ranked schemes. Where no route is feasible, every scheme is ``unfit`` and ``shortfalls`` say what is
+        missing.
+
+    Raises
+    ------
+    SiteError
+        If site file and DEM do not fit each other.
+    TerrainError
+        If the DEM cannot serve.
+    """
+    report = reporter(progress)
+    survey_ = _surveyed(site, report)
+    scene, setting = survey_.scene, survey_.setting
+    bench = Bench(site, scene, setting, lambda _: None)
+    candidates = [candidate for offer in survey_.offers for candidate in offer.candidates]
+    schemes = rank(
+        [_scheme(survey_, bench, candidate) for candidate in candidates], asked=site.demand.discharge_m3s is not None
+    )
+    return Plan(
+        site=site,
+        terrain=scene.terrain,
+        water_body=scene.body,
+        lowest_crest=scene.crest,
+        setting=setting,
+        schemes=schemes,
+        shortfalls=tuple(offer.shortfall for offer in survey_.offers if offer.shortfall is not None),
+        assumptions=_assumptions(site, scene, setting),
+        warnings=(*scene.warnings, *hollow_note(scene, setting), *_proof_warnings(survey_)),
+        timings_s=report.timings_s,
+    )

@@ -1,0 +1,289 @@
+"""The ground of a job: a window of the DEM with water body, grid and lowest crest, grown until they fit."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from contextlib import ExitStack
+from dataclasses import dataclass, replace
+from typing import Literal
+
+import numpy as np
+
+from routing.errors import InputError, Problem, SiteError
+from routing.planning.reports import Reporter
+from routing.planning.troubles import site_problem
+from routing.records import BoolArray, Cell, GridWindow, PlacedPoint, Saddle, Site, Terrain, WaterBody
+from routing.search import Crest, Grid, lowest_crest, prepare_grid
+from routing.terrain import (
+    Dem,
+    FlatWater,
+    LayerAsk,
+    cell_at,
+    dry_cell,
+    flat_water,
+    place_point,
+    water_body,
+    water_body_from_polygon,
+    with_voids_as_water,
+    xy_of,
+)
+
+_LEAST_MARGIN_CELLS = 48
+# A window that must grow doubles its sides: few re-reads, and never four times more than is needed.
+_GROWTH = 2.0
+
+
+@dataclass(frozen=True, slots=True)
+class Ends:
+    """Intake and outlet, placed on the DEM."""
+
+    intake: PlacedPoint
+    outlet: PlacedPoint
+
+
+@dataclass(frozen=True, slots=True)
+class Scene:
+    """Everything about the ground of one job, in one window.
+
+    ``proven`` is false where the window could not be grown until water body and lowest crest fit.
+    """
+
+    dem: Dem
+    terrain: Terrain
+    grid: Grid
+    ends: Ends
+    intake_cell: tuple[int, int]
+    outlet_cell: tuple[int, int]
+    flat: FlatWater | None
+    present_m: float
+    body: WaterBody
+    crest: Saddle | None
+    proven: bool
+    warnings: tuple[str, ...]
+
+
+def place_ends(site: Site, dem: Dem) -> Ends:
+    """Place intake and outlet; both are tried, so that all problems show at once.
+
+    Raises
+    ------
+    SiteError
+        If either cannot be placed.
+    """
+    placed: list[PlacedPoint] = []
+    problems: list[Problem] = []
+    for what, ask in (("intake", site.intake.at), ("outlet", site.outlet.at)):
+        try:
+            placed.append(place_point(dem, ask, site.file, what))
+        except InputError as error:
+            problems.extend(error.problems)
+    if problems:
+        raise SiteError(*problems)
+    return Ends(*placed)
+
+
+def first_window(dem: Dem, ends: Ends) -> GridWindow:
+    """Return the window to begin with: both ends with a margin of half their distance."""
+    points = [(point.x, point.y) for point in (ends.intake, ends.outlet)]
+    rows, cols = np.array([dem.cell_of(*point) for point in points]).T
+    apart = max(int(np.ptp(rows)), int(np.ptp(cols)))
+    return dem.window_around(points, max(_LEAST_MARGIN_CELLS, apart // 2))
+
+
+def grown_window(site: Site, dem: Dem, window: GridWindow) -> GridWindow | None:
+    """Return the next larger window, or ``None`` where there is no more DEM or the user's limit forbids it."""
+    if window.whole:
+        return None
+    larger = dem.grown(window, factor=_GROWTH)
+    return larger if larger.rows * larger.cols <= site.search.largest_window_cells else None
+
+
+def _cell(terrain: Terrain, point: PlacedPoint) -> tuple[int, int]:
+    cell = cell_at(terrain, point.x, point.y)
+    if cell is None:  # a point on the DEM's very edge
+        a, _, c, _, e, f = terrain.transform
+        rows, cols = terrain.shape
+        cell = Cell(int(np.clip((point.y - f) / e, 0, rows - 1)), int(np.clip((point.x - c) / a, 0, cols - 1)))
+    return cell.row, cell.col
+
+
+def _present_level(site: Site, flat: FlatWater | None) -> float:
+    """Return the present level: given, or read off the flat water."""
+    if site.water.present_level_m is not None:
+        return site.water.present_level_m
+    if flat is not None:
+        return flat.level_m
+    raise SiteError(
+        site_problem(
+            site,
+            "water.present_level_m",
+            "The present water level is not given, and the DEM shows no flat water at the intake.",
+            found="nothing",
+            allowed="a level in metres, in the datum of the DEM",
+            remedy="set water.present_level_m, or move the intake into the water",
+        )
+    )
+
+
+def _check_wet(site: Site, terrain: Terrain, cell: tuple[int, int], level_m: float) -> None:
+    if dry_cell(terrain, Cell(*cell), level_m):
+        ground = terrain.elevation_m[cell]
+        raise SiteError(
+            site_problem(
+                site,
+                site.intake.at.key or "intake",
+                "The intake is on dry ground.",
+                found=f"ground at {ground:.2f} m, water at {level_m:.2f} m",
+                allowed="a cell whose ground is at or below the water level",
+                remedy="move the intake into the water, or correct the water level",
+            )
+        )
+
+
+def _check_outlet(site: Site, scene: Scene) -> None:
+    row, col = scene.outlet_cell
+    if not scene.terrain.valid[row, col]:
+        raise SiteError(
+            site_problem(
+                site,
+                site.outlet.at.key or "outlet",
+                "The DEM has no data at the outlet.",
+                found="nodata",
+                allowed="a cell with a ground level",
+                remedy="move the outlet onto ground that the DEM shows",
+            )
+        )
+    crest = scene.crest
+    if scene.body.cells[row, col] or (crest is not None and crest.level_m <= scene.body.level_m):
+        place = "" if crest is None else f"; the highest ground on the lowest way between them is {crest.level_m:.2f} m"
+        at = "" if crest is None else f" at x {crest.x:.1f}, y {crest.y:.1f}"
+        raise SiteError(
+            site_problem(
+                site,
+                "water.present_level_m" if site.water.present_level_m is not None else site.outlet.at.key or "outlet",
+                "At the present level the water reaches the outlet: there is nothing to siphon over.",
+                found=f"water at {scene.body.level_m:.2f} m{place}{at}",
+                allowed="a level below the spill level, and an outlet outside the water",
+                remedy="correct the level if it is above that saddle, or move the outlet beyond the barrier",
+            )
+        )
+
+
+def _body(site: Site, terrain: Terrain, ends: Ends, cell: tuple[int, int], level_m: float) -> WaterBody:
+    if site.water.polygon_file is None:
+        return water_body(terrain, Cell(*cell), level_m)
+    key = "water.polygon_file"
+    layer = LayerAsk(
+        site.water.polygon_file, site.water.polygon_layer, site_file=site.file, key=key, line=site.lines.get(key)
+    )
+    return water_body_from_polygon(terrain, layer, level_m, ends.intake)
+
+
+def _saddle(terrain: Terrain, crest: Crest | None, towards: Literal["outlet", "edge"]) -> Saddle | None:
+    if crest is None:
+        return None
+    x, y = xy_of(terrain, crest.row, crest.col)
+    return Saddle(crest.level_m, float(x), float(y), towards, proven=not crest.border_met)
+
+
+def _edge_mask(window: GridWindow) -> BoolArray:
+    """Cells on the DEM's real edge."""
+    mask = np.zeros((window.rows, window.cols), dtype=np.bool_)
+    north, south, west, east = window.open_sides
+    mask[0, :] |= not north
+    mask[-1, :] |= not south
+    mask[:, 0] |= not west
+    mask[:, -1] |= not east
+    return mask
+
+
+def _look_at(site: Site, dem: Dem, ends: Ends, window: GridWindow, tick: Callable[[int], None]) -> Scene:
+    """Read one window and find water body, lowest crest and spill in it."""
+    terrain = dem.read(window)
+    intake, outlet = _cell(terrain, ends.intake), _cell(terrain, ends.outlet)
+    flat = flat_water(terrain, Cell(*intake)) if site.terrain.water_shown == "surface" else None
+    present = _present_level(site, flat)
+    # Where the DEM shows a higher water than today's, the ground under it is unknown: its level stands for it.
+    shown = max(present, flat.level_m) if flat is not None else present
+    _check_wet(site, terrain, intake, shown)
+    body = _body(site, terrain, ends, intake, shown)
+    terrain = with_voids_as_water(terrain, body)
+    grid = prepare_grid(
+        terrain.elevation_m,
+        terrain.step_x_m,
+        terrain.step_y_m,
+        valid=terrain.valid,
+        neighbours=site.search.neighbours,
+    )
+    goal = np.zeros(grid.shape, dtype=np.bool_)
+    goal[outlet] = True
+    border = window.open_border()
+    to_outlet = _saddle(terrain, lowest_crest(grid, body.cells, goal, open_border=border, tick=tick), "outlet")
+    edge = _edge_mask(window)
+    to_edge = None
+    if edge.any() and not body.touches_edge:
+        to_edge = _saddle(terrain, lowest_crest(grid, body.cells, edge, open_border=border, tick=tick), "edge")
+    known = [saddle for saddle in (to_outlet, to_edge) if saddle is not None and saddle.proven]
+    spill = min(known, key=lambda saddle: saddle.level_m) if known and not body.touches_edge else None
+    return Scene(
+        dem=dem,
+        terrain=terrain,
+        grid=grid,
+        ends=ends,
+        intake_cell=intake,
+        outlet_cell=outlet,
+        flat=flat,
+        present_m=present,
+        body=replace(body, spill=spill),
+        crest=to_outlet,
+        proven=not body.touches_open_border and (window.whole or (to_outlet is not None and to_outlet.proven)),
+        warnings=(),
+    )
+
+
+def _warnings(site: Site, scene: Scene) -> tuple[str, ...]:
+    notes = []
+    if not scene.proven:
+        notes.append(
+            "The water body or the lowest way to the outlet runs on beyond the part of the DEM that was read: area, "
+            f"spill level and lowest crest are not proven (search.largest_window_cells = "
+            f"{site.search.largest_window_cells})."
+        )
+    if scene.body.touches_edge:
+        notes.append(
+            "The edge of the DEM cuts the water body: its area is a lower bound and its spill level is unknown. If it "
+            "should not reach so far, the present level may be above a saddle."
+        )
+    if scene.flat is not None and scene.flat.level_m > scene.present_m + 0.01:
+        notes.append(
+            f"The DEM shows the water at {scene.flat.level_m:.2f} m, above the present level: the ground between is "
+            "unknown, and the shoreline drawn is that of the DEM."
+        )
+    if scene.flat is None and site.terrain.water_shown == "surface":
+        notes.append(
+            "No flat water surface was found at the intake, though the DEM is said to show one: check "
+            "terrain.water_shown and the levels."
+        )
+    return tuple(notes)
+
+
+def survey(site: Site, dem: Dem, ends: Ends, window: GridWindow, reporter: Reporter) -> Scene:
+    """Read a window and grow it until the water body and the lowest way to the outlet lie inside.
+
+    Raises
+    ------
+    SiteError
+        If the intake is dry, the outlet has no data or lies in the water, or no present level is known.
+    TerrainError
+        If the DEM cannot serve.
+    """
+    while True:
+        with ExitStack() as stack:
+            tick = stack.enter_context(reporter.stage("ground and water body", 2 * window.rows * window.cols))
+            scene = _look_at(site, dem, ends, window, tick)
+        larger = None if scene.proven else grown_window(site, dem, window)
+        if larger is None:
+            break
+        window = larger
+    _check_outlet(site, scene)
+    return replace(scene, warnings=_warnings(site, scene))
