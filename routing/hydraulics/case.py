@@ -26,6 +26,11 @@ class Case:
     def of(cls, pipe: Pipe, levels: Levels, losses: Losses, water: Water, limits: Limits) -> Case:
         """Check the records and join them.
 
+        Parameters
+        ----------
+        pipe, levels, losses, water, limits
+            The records of one siphon at one state of levels.
+
         Raises
         ------
         InputError

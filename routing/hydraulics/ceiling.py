@@ -71,6 +71,8 @@ def energy_discharge_m3s(
 
     Parameters
     ----------
+    pipe, levels, losses, water, limits
+        The case.
     length_m
         Length of the pipe, 0 or more.
 
@@ -101,6 +103,8 @@ def discharge_under(  # noqa: PLR0913, PLR0917 - the five records of a case and 
 
     Parameters
     ----------
+    pipe, levels, losses, water, limits
+        The case.
     chainage_m, crown_m : (n,) arrays
         Points that the crown must pass, in any order; none leaves the energy limit alone.
     length_m

@@ -73,6 +73,11 @@ def _problems(rows: Iterable[_Row]) -> list[Problem]:
 def check_records(pipe: Pipe, levels: Levels, losses: Losses, water: Water, limits: Limits) -> None:
     """Refuse records that hold a number outside its range; all problems are told at once.
 
+    Parameters
+    ----------
+    pipe, levels, losses, water, limits
+        The records of one case.
+
     Raises
     ------
     InputError
@@ -96,6 +101,15 @@ def check_records(pipe: Pipe, levels: Levels, losses: Losses, water: Water, limi
 
 def check_number(name: str, value: float, low: float, high: float, unit: str = "") -> float:
     """Return a number as ``float`` if it lies in a range; the ends are allowed.
+
+    Parameters
+    ----------
+    name
+        What the number is, for the message.
+    value, low, high
+        The number and its range.
+    unit
+        Unit, for the message.
 
     Raises
     ------
@@ -131,6 +145,11 @@ def _first_bad(name: str, values: FloatArray) -> Problem | None:
 
 def check_points(chainage_m: FloatArray, crown_m: FloatArray) -> tuple[FloatArray, FloatArray]:
     """Return points of a long section as two float64 vectors of one length, finite, chainage not negative.
+
+    Parameters
+    ----------
+    chainage_m, crown_m : (n,) arrays
+        Anything that numpy turns into vectors of numbers; n may be 0.
 
     Raises
     ------

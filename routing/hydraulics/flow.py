@@ -34,7 +34,15 @@ class Conduit:
 
     @classmethod
     def of(cls, pipe: Pipe, water: Water, gravity_ms2: float) -> Conduit:
-        """Return the conduit of checked records."""
+        """Return the conduit of checked records.
+
+        Parameters
+        ----------
+        pipe, water
+            What flows in what.
+        gravity_ms2
+            Acceleration of gravity.
+        """
         bore = float(pipe.bore_m)
         return cls(
             bore_m=bore,

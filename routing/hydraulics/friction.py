@@ -30,6 +30,13 @@ def colebrook_x(reynolds: float, relative_roughness: float) -> float:
 
     Newton's method on ``x + 2 log10(k/(3.7 D) + 2.51 x / Re) = 0``, which is concave and rising in x, so that it
     converges from any start near the root. The start is Haaland's explicit formula.
+
+    Parameters
+    ----------
+    reynolds
+        Reynolds number, above 0.
+    relative_roughness
+        Roughness over bore, 0 or more.
     """
     a = relative_roughness * _ROUGH
     b = _SMOOTH / reynolds

@@ -46,6 +46,13 @@ def pe_least_wall_mm(outside_diameter_mm: float, sdr: float) -> float | None:
     0.01 mm). It gives 88 of the 89 walls of MS 1058-2 for SDR 6 to 17; 200 mm SDR 6 is 33.3 mm there and 33.2 mm in
     a copy of ISO 4427-2:2007 and by the rule (the thinner is kept: the safe side for collapse). Three small sizes
     are rounded up further. The nominal SDR does not give the wall: 110/17 is 6.5, the table 6.6.
+
+    Parameters
+    ----------
+    outside_diameter_mm
+        Nominal outside diameter.
+    sdr
+        Standard dimension ratio by its name (13.6, not 13.62).
     """
     if outside_diameter_mm not in PE_DIAMETERS_MM or sdr not in PE_SERIES:
         return None
@@ -84,7 +91,15 @@ PE_TEMPERATURE_FACTORS: tuple[float, ...] = (1.0, 0.93, 0.82, 0.73, 0.64, 0.58, 
 
 
 def interpolate(x: float, xs: tuple[float, ...], ys: tuple[float, ...]) -> float:
-    """Return y at x on straight lines between table points; beyond the ends the end value."""
+    """Return y at x on straight lines between table points; beyond the ends the end value.
+
+    Parameters
+    ----------
+    x
+        Where to read.
+    xs, ys
+        The table; xs rising.
+    """
     if x <= xs[0]:
         return ys[0]
     if x >= xs[-1]:

@@ -119,6 +119,8 @@ def run_at(
 
     Parameters
     ----------
+    pipe, profile, levels, losses, water, limits
+        As for :func:`run_siphon`.
     discharge_m3s
         Discharge of one pipe; 0 is still water behind a shut valve.
 

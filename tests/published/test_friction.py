@@ -76,7 +76,8 @@ def test_gate_question_full_equation():
 
 
 def test_series_of_two_bores():
-    # Wolaita Sodo University tutorial, question 1: 13.337 m with chart factors, 13.364 m with the full equation.
+    # University tutorial (Wolaita), question 1:
+    # 13.337 m with chart factors, 13.364 m with the full equation.
     wide, _ = head_loss_m(0.5, 0.6, 300.0, 1.31e-6, 0.26e-3)
     narrow, _ = head_loss_m(0.5, 0.4, 300.0, 1.31e-6, 0.26e-3)
     heads = [(0.5 / (0.25 * np.pi * d**2)) ** 2 / (2 * G) for d in (0.6, 0.4)]
