@@ -102,20 +102,29 @@ def _outside(dem: Dem, ask: PointAsk, at: tuple[float, float], site_file: Path |
 
 
 def _hint(dem: Dem, ask: PointAsk, at: tuple[float, float]) -> str:
-    """Return what probably went wrong, where trying it puts the point on the DEM."""
+    """Return what probably went wrong, where trying it puts the point on the DEM or near it."""
+    if _near(dem, *at):
+        return ""
     if ask.lon is not None and ask.lat is not None:
-        if dem.holds(ask.lon, ask.lat):
+        if _near(dem, ask.lon, ask.lat):
             return "these look like coordinates in the DEM's CRS: give them as x and y"
-        return "lon and lat look swapped: exchange them" if _holds_degrees(dem, ask.lat, ask.lon) else ""
-    if dem.holds(at[1], at[0]):
+        return "lon and lat look swapped: exchange them" if _near_degrees(dem, ask.lat, ask.lon) else ""
+    if _near(dem, at[1], at[0]):
         return "x and y look swapped: exchange them"
     if dem.crs.is_geographic:
         return ""
-    if _holds_degrees(dem, *at):
+    if _near_degrees(dem, *at):
         return "these look like degrees: give them as lon and lat"
-    looks_turned = _holds_degrees(dem, at[1], at[0])
+    looks_turned = _near_degrees(dem, at[1], at[0])
     return "these look like latitude and longitude in degrees: give them as lat and lon" if looks_turned else ""
 
 
-def _holds_degrees(dem: Dem, lon: float, lat: float) -> bool:
-    return abs(lon) <= 180.0 and abs(lat) <= 90.0 and dem.holds(*dem.from_lonlat(lon, lat))
+def _near(dem: Dem, x: float, y: float) -> bool:
+    """Return whether a position lies on the DEM or no further from it than its own size."""
+    west, south, east, north = dem.bounds
+    width, height = east - west, north - south
+    return west - width <= x <= east + width and south - height <= y <= north + height
+
+
+def _near_degrees(dem: Dem, lon: float, lat: float) -> bool:
+    return abs(lon) <= 180.0 and abs(lat) <= 90.0 and _near(dem, *dem.from_lonlat(lon, lat))

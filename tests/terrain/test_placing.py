@@ -71,6 +71,17 @@ def test_a_line_is_no_point(dem, write_points):
     assert "LineString" in problem_of(dem, PointAsk(file=path)).found
 
 
+def test_a_point_beside_a_line_is_not_one_point(dem, tmp_path):
+    path = tmp_path / "mixed.geojson"
+    shapes = [
+        {"type": "Point", "coordinates": [-93.63, 45.147]},
+        {"type": "LineString", "coordinates": [[-93.63, 45.147], [-93.62, 45.147]]},
+    ]
+    features = [{"type": "Feature", "properties": {}, "geometry": shape} for shape in shapes]
+    path.write_text(json.dumps({"type": "FeatureCollection", "features": features}))
+    assert problem_of(dem, PointAsk(file=path)).found == "1 points among 2 features (LineString, Point)"
+
+
 def test_outside_is_told_in_the_users_coordinates(dem):
     problem = problem_of(dem, PointAsk(x=1.0e6, y=4999500.0, key="intake.x", line=8))
     assert "450000.00 to 451000.00" in problem.allowed
@@ -88,6 +99,12 @@ def test_hints(dem):
     assert "latitude and longitude" in problem_of(dem, PointAsk(x=at.lat, y=at.lon)).remedy
     assert "give them as x and y" in problem_of(dem, PointAsk(lon=at.x, lat=at.y)).remedy
     assert "correct the position" in problem_of(dem, PointAsk(x=0.0, y=0.0)).remedy
+
+
+def test_hints_are_given_for_points_near_the_dem_too(dem):
+    at = dem.to_lonlat(451200.0, 4999500.0)
+    assert "swapped" in problem_of(dem, PointAsk(lon=at[1], lat=at[0])).remedy
+    assert "correct the position" in problem_of(dem, PointAsk(lon=at[0], lat=at[1])).remedy
 
 
 def test_no_position(dem):

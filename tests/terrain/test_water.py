@@ -151,6 +151,26 @@ def test_a_void_that_leads_to_the_edge_leaves_the_area_open(make_terrain):
     assert body.touches_edge
 
 
+def test_a_void_that_meets_dry_ground_at_a_corner_only_is_not_water(make_terrain):
+    ground = basin(11)
+    ground[2, 2] = NAN
+    ground[1, 2:4] = ground[2:4, 1] = ground[1, 1] = -5.0
+    assert water_body(make_terrain(ground), Cell(5, 6), 0.0).void_cells == 1
+    ground[1, 1] = 10.0
+    assert water_body(make_terrain(ground), Cell(5, 6), 0.0).void_cells == 0
+
+
+def test_a_void_at_the_border_with_water_around_it_stays_open(make_terrain):
+    ground = np.full((9, 9), -5.0)
+    ground[:, 6:] = 10.0
+    ground[3:6, 0] = NAN
+    closed = water_body(make_terrain(ground), Cell(1, 1), 0.0)
+    assert (closed.void_cells, closed.touches_edge) == (0, True)
+    ground[:, 0] = NAN
+    part = water_body(make_terrain(ground, window=GridWindow(0, 3, 9, 9, 9, 12)), Cell(4, 4), 0.0)
+    assert (part.void_cells, part.touches_open_border) == (0, True)
+
+
 def test_a_void_elsewhere_does_not(make_terrain):
     ground = basin(11)
     ground[0, :] = NAN
