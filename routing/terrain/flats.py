@@ -73,7 +73,15 @@ def flat_water(terrain: Terrain, cell: Cell, tolerance_m: float | None = None) -
 
 
 def nearest_valid(terrain: Terrain, cell: Cell) -> Cell | None:
-    """Return the cell itself if it holds data, else the nearest (on the ground) that does, else ``None``."""
+    """Return the cell itself if it holds data, else the nearest (on the ground) that does, else ``None``.
+
+    Parameters
+    ----------
+    terrain
+        Ground of the window.
+    cell
+        Cell of the window.
+    """
     if terrain.valid[cell.row, cell.col]:
         return cell
     rows, cols = np.nonzero(terrain.valid)

@@ -16,7 +16,7 @@ from routing.terrain.telling import Teller
 from routing.terrain.units import UnitSaid, unit_of_size
 
 _KEY = "terrain.file"
-_HALF_ZONE_LIMIT = 84.0  # UTM ends at 84 degrees north and 80 south
+_UTM_NORTH_LIMIT = 84.0  # and 80 degrees south
 
 
 @dataclass(frozen=True, slots=True)
@@ -28,7 +28,13 @@ class Geodetic:
     degrees_per_unit: float
 
     def degrees(self, x: ArrayLike, y: ArrayLike) -> tuple[FloatArray, FloatArray]:
-        """Return longitude and latitude in degrees on the CRS's own datum; infinite where it cannot be."""
+        """Return longitude and latitude in degrees on the CRS's own datum; infinite where it cannot be.
+
+        Parameters
+        ----------
+        x, y
+            Positions in the CRS, of any one shape.
+        """
         lon, lat = np.asarray(x, dtype=np.float64), np.asarray(y, dtype=np.float64)
         if self.transformer is not None:
             lon, lat = self.transformer.transform(lon, lat)
@@ -66,7 +72,13 @@ class Grid:
 
 
 def horizontal_part(crs: CRS) -> CRS:
-    """Return the two-dimensional CRS of the plan coordinates."""
+    """Return the two-dimensional CRS of the plan coordinates.
+
+    Parameters
+    ----------
+    crs
+        Any CRS.
+    """
     if crs.is_bound and crs.source_crs is not None:
         crs = crs.source_crs
     if crs.is_compound:
@@ -77,7 +89,13 @@ def horizontal_part(crs: CRS) -> CRS:
 
 
 def vertical_part(crs: CRS) -> VerticalPart | None:
-    """Return what the CRS says of height, or ``None`` where it is a CRS of the plan only."""
+    """Return what the CRS says of height, or ``None`` where it is a CRS of the plan only.
+
+    Parameters
+    ----------
+    crs
+        Any CRS.
+    """
     if crs.is_bound and crs.source_crs is not None:
         crs = crs.source_crs
     if crs.is_compound:
@@ -98,6 +116,13 @@ def vertical_part(crs: CRS) -> VerticalPart | None:
 
 def check_plan_crs(crs: CRS | None, teller: Teller) -> CRS:
     """Return the plan CRS, refused unless places on Earth can be told from it.
+
+    Parameters
+    ----------
+    crs
+        CRS of the file, or ``None``.
+    teller
+        Where the problem would stand.
 
     Raises
     ------
@@ -127,6 +152,11 @@ def check_plan_crs(crs: CRS | None, teller: Teller) -> CRS:
 
 def geodetic_of(plan: CRS) -> Geodetic:
     """Return the way from a plan CRS (projected or geographic) to degrees and lengths on its ellipsoid.
+
+    Parameters
+    ----------
+    plan
+        CRS of the plan coordinates.
 
     Raises
     ------
@@ -210,8 +240,14 @@ def _check_degrees(grid: Grid, plan: CRS, teller: Teller) -> None:
 
 
 def local_utm(lon: float, lat: float) -> str:
-    """Return the code of the UTM zone (WGS 84) at a place, or of the polar grid beyond it."""
-    if lat > _HALF_ZONE_LIMIT:
+    """Return the code of the UTM zone (WGS 84) at a place, or of the polar grid beyond it.
+
+    Parameters
+    ----------
+    lon, lat
+        Place in degrees.
+    """
+    if lat > _UTM_NORTH_LIMIT:
         return "EPSG:32661"
     if lat < -80.0:
         return "EPSG:32761"

@@ -105,18 +105,17 @@ def _hint(dem: Dem, ask: PointAsk, at: tuple[float, float]) -> str:
     """Return what probably went wrong, where trying it puts the point on the DEM or near it."""
     if _near(dem, *at):
         return ""
-    if ask.lon is not None and ask.lat is not None:
-        if _near(dem, ask.lon, ask.lat):
-            return "these look like coordinates in the DEM's CRS: give them as x and y"
-        return "lon and lat look swapped: exchange them" if _near_degrees(dem, ask.lat, ask.lon) else ""
-    if _near(dem, at[1], at[0]):
-        return "x and y look swapped: exchange them"
-    if dem.crs.is_geographic:
-        return ""
-    if _near_degrees(dem, *at):
-        return "these look like degrees: give them as lon and lat"
-    looks_turned = _near_degrees(dem, at[1], at[0])
-    return "these look like latitude and longitude in degrees: give them as lat and lon" if looks_turned else ""
+    in_degrees = ask.lon is not None and ask.lat is not None
+    x, y = (ask.lon, ask.lat) if ask.lon is not None and ask.lat is not None else at
+    projected = not dem.crs.is_geographic
+    guesses = (
+        (in_degrees and _near(dem, x, y), "these look like coordinates in the DEM's CRS: give them as x and y"),
+        (in_degrees and _near_degrees(dem, y, x), "lon and lat look swapped: exchange them"),
+        (not in_degrees and _near(dem, y, x), "x and y look swapped: exchange them"),
+        (projected and _near_degrees(dem, x, y), "these look like degrees: give them as lon and lat"),
+        (projected and _near_degrees(dem, y, x), "these look like latitude and longitude: give them as lat and lon"),
+    )
+    return next((text for right, text in guesses if right), "")
 
 
 def _near(dem: Dem, x: float, y: float) -> bool:

@@ -93,15 +93,33 @@ class Dem:
         return GridWindow(0, 0, rows, cols, rows, cols)
 
     def to_lonlat(self, x: float, y: float) -> tuple[float, float]:
-        """Return WGS 84 longitude and latitude of a map position (infinite where there is none)."""
+        """Return WGS 84 longitude and latitude of a map position (infinite where there is none).
+
+        Parameters
+        ----------
+        x, y
+            Position in the DEM's CRS.
+        """
         return self._wgs84.of(x, y)
 
     def from_lonlat(self, lon: float, lat: float) -> tuple[float, float]:
-        """Return the map position of a WGS 84 longitude and latitude (infinite where there is none)."""
+        """Return the map position of a WGS 84 longitude and latitude (infinite where there is none).
+
+        Parameters
+        ----------
+        lon, lat
+            Position in WGS 84 degrees.
+        """
         return self._wgs84.back(lon, lat)
 
     def holds(self, x: float, y: float) -> bool:
-        """Return whether a map position lies on the DEM."""
+        """Return whether a map position lies on the DEM.
+
+        Parameters
+        ----------
+        x, y
+            Position in the DEM's CRS.
+        """
         west, south, east, north = self.bounds
         return west <= x <= east and south <= y <= north
 

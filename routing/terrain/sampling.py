@@ -87,7 +87,15 @@ def sample_rowcol(terrain: Terrain, row: ArrayLike, col: ArrayLike) -> tuple[Flo
 
 
 def rowcol_of(terrain: Terrain, x: ArrayLike, y: ArrayLike) -> tuple[FloatArray, FloatArray]:
-    """Return map positions as places counted in cells of the window, cell centres at whole numbers."""
+    """Return map positions as places counted in cells of the window, cell centres at whole numbers.
+
+    Parameters
+    ----------
+    terrain
+        Ground of the window.
+    x, y
+        Positions in the DEM's CRS, of any one shape.
+    """
     a, _, c, _, e, f = terrain.transform
     col = (np.asarray(x, dtype=np.float64) - c) / a - 0.5
     row = (np.asarray(y, dtype=np.float64) - f) / e - 0.5
@@ -95,7 +103,15 @@ def rowcol_of(terrain: Terrain, x: ArrayLike, y: ArrayLike) -> tuple[FloatArray,
 
 
 def xy_of(terrain: Terrain, row: ArrayLike, col: ArrayLike) -> tuple[FloatArray, FloatArray]:
-    """Return places counted in cells of the window as map positions in the DEM's CRS."""
+    """Return places counted in cells of the window as map positions in the DEM's CRS.
+
+    Parameters
+    ----------
+    terrain
+        Ground of the window.
+    row, col
+        Places in the window, of any one shape.
+    """
     a, _, c, _, e, f = terrain.transform
     x = c + a * (np.asarray(col, dtype=np.float64) + 0.5)
     y = f + e * (np.asarray(row, dtype=np.float64) + 0.5)
@@ -103,7 +119,15 @@ def xy_of(terrain: Terrain, row: ArrayLike, col: ArrayLike) -> tuple[FloatArray,
 
 
 def cell_at(terrain: Terrain, x: float, y: float) -> Cell | None:
-    """Return the cell of the window that holds a map position, or ``None`` where none does."""
+    """Return the cell of the window that holds a map position, or ``None`` where none does.
+
+    Parameters
+    ----------
+    terrain
+        Ground of the window.
+    x, y
+        Position in the DEM's CRS.
+    """
     row, col = rowcol_of(terrain, x, y)
     rows, cols = terrain.shape
     if not (-0.5 <= row <= rows - 0.5 and -0.5 <= col <= cols - 0.5):

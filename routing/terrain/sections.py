@@ -32,7 +32,15 @@ class _Legs:
     length: FloatArray
 
     def place(self, leg: IndexArray, part: FloatArray) -> tuple[FloatArray, FloatArray]:
-        """Return row and column at a part of the way along each leg."""
+        """Return row and column at a part of the way along each leg.
+
+        Parameters
+        ----------
+        leg
+            (n,) numbers of legs.
+        part
+            (n,) parts of the way along each.
+        """
         return self.row[leg] + part * self.by_row[leg], self.col[leg] + part * self.by_col[leg]
 
 

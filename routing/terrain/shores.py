@@ -84,17 +84,39 @@ def share_above_level(terrain: Terrain, body: WaterBody) -> float:
 
 
 def level_slack_m(level_m: float) -> float:
-    """Return the rounding of a level stored as a 4-byte float: cells that near a water surface belong to it."""
+    """Return the rounding of a level stored as a 4-byte float: cells that near a water surface belong to it.
+
+    Parameters
+    ----------
+    level_m
+        Level.
+    """
     return float(np.spacing(np.float32(abs(level_m))))
 
 
 def cells_area_m2(terrain: Terrain, cells: BoolArray) -> float:
-    """Return the ground area of cells, from the ground steps of their rows."""
+    """Return the ground area of cells, from the ground steps of their rows.
+
+    Parameters
+    ----------
+    terrain
+        Ground of the window.
+    cells
+        (rows, cols) bool array.
+    """
     return float(np.sum(cells.sum(axis=1) * terrain.step_x_m * terrain.step_y_m))
 
 
 def shoreline_of(terrain: Terrain, cells: BoolArray) -> Polygon | MultiPolygon:
-    """Return the outline of cells as a valid polygon (several where parts meet at corners only)."""
+    """Return the outline of cells as a valid polygon (several where parts meet at corners only).
+
+    Parameters
+    ----------
+    terrain
+        Ground of the window.
+    cells
+        (rows, cols) bool array, true somewhere.
+    """
     from rasterio.features import shapes  # noqa: PLC0415
 
     rows, cols = np.flatnonzero(cells.any(axis=1)), np.flatnonzero(cells.any(axis=0))
@@ -108,7 +130,15 @@ def shoreline_of(terrain: Terrain, cells: BoolArray) -> Polygon | MultiPolygon:
 
 
 def touched_borders(terrain: Terrain, cells: BoolArray) -> tuple[bool, bool]:
-    """Return whether cells lie at the DEM's own edge, and at a border beyond which the DEM goes on."""
+    """Return whether cells lie at the DEM's own edge, and at a border beyond which the DEM goes on.
+
+    Parameters
+    ----------
+    terrain
+        Ground of the window.
+    cells
+        (rows, cols) bool array.
+    """
     open_border = terrain.window.open_border()
     north, south, west, east = terrain.window.open_sides
     sides = ((north, cells[0]), (south, cells[-1]), (west, cells[:, 0]), (east, cells[:, -1]))

@@ -26,7 +26,15 @@ class Teller:
     lines: Mapping[str, int] = field(default_factory=dict)
 
     def error(self, key: str, what: str, *, found: str = "", allowed: str = "", remedy: str = "") -> TerrainError:
-        """Return the error for one key of the site file (``terrain.file``)."""
+        """Return the error for one key of the site file (``terrain.file``).
+
+        Parameters
+        ----------
+        key
+            Dotted key of the site file.
+        what, found, allowed, remedy
+            As in ``Problem``.
+        """
         in_site = self.site_file is not None
         return TerrainError(
             Problem(

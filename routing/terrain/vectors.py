@@ -26,7 +26,13 @@ class LayerAsk:
     site_file: Path | None = None
 
     def error(self, what: str, *, found: str = "", allowed: str = "", remedy: str = "") -> TerrainError:
-        """Return the error for this layer."""
+        """Return the error for this layer.
+
+        Parameters
+        ----------
+        what, found, allowed, remedy
+            As in ``Problem``.
+        """
         place = str(self.file if self.site_file is None else self.site_file)
         return TerrainError(Problem(what, found, allowed, remedy, file=place, key=self.key, line=self.line))
 

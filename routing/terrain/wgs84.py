@@ -39,13 +39,25 @@ class Wgs84:
         return AreaOfInterest(float(lon.min()), float(lat.min()), float(lon.max()), float(lat.max()))
 
     def of(self, x: float, y: float) -> tuple[float, float]:
-        """Return longitude and latitude of a map position (infinite where there is none)."""
+        """Return longitude and latitude of a map position (infinite where there is none).
+
+        Parameters
+        ----------
+        x, y
+            Position in the DEM's CRS.
+        """
         lon, lat = self._transformer.transform(x, y)
         # A DEM whose longitudes run from 0 to 360 is legal; positions are told from -180 to 180.
         return float(lon) if abs(lon) <= 180.0 else _turned(float(lon), 0.0), float(lat)
 
     def back(self, lon: float, lat: float) -> tuple[float, float]:
-        """Return the map position of a longitude and latitude (infinite where there is none)."""
+        """Return the map position of a longitude and latitude (infinite where there is none).
+
+        Parameters
+        ----------
+        lon, lat
+            Position in WGS 84 degrees.
+        """
         x, y = self._transformer.transform(lon, lat, direction="INVERSE")
         if self._crs.is_geographic and self._geodetic.degrees_per_unit == 1.0:
             west, _, east, _ = self._bounds
