@@ -65,6 +65,7 @@ class Bench:
             cap_level_m=ceiling.cap_m - offset,
             longest_m=ceiling.longest_m / stretch,
             rule=self.site.search.ground_rule,
+            along=self.site.search.ground_rule == "bilinear",
         )
 
     def flow(self, pipe: Pipe) -> Flow:
@@ -74,7 +75,7 @@ class Bench:
         return Flow(
             limit_at=lambda discharge: self.limit_at(pipe, discharge),
             carried_by=lambda path: discharge_under(
-                pipe, *rest, path.far_length_m, path.high_m + offset, path.length_m
+                pipe, *rest, path.at_length_m, path.at_level_m + offset, path.length_m
             ),
             carried_at_length=lambda length: energy_discharge_m3s(pipe, length, *rest),
         )
@@ -103,9 +104,9 @@ class Bench:
         whole = best.proven_outside or self.scene.terrain.window.whole
         where = "on the whole DEM" if whole else "inside the part of the DEM that was read"
         ask = self.site.search
-        rule = "highest bilinear ground" if ask.ground_rule == "bilinear" else "highest cell"
+        rule = "bilinear ground" if ask.ground_rule == "bilinear" else "cells"
         text = (
-            f"No path {where} ({ask.neighbours} neighbours, {rule} of each step) carries more than "
+            f"No path {where} ({ask.neighbours} neighbours, {rule}) carries more than "
             f"{best.high:.4g} m3/s in one pipe; the best found carries {best.low:.4g} by the same rule. "
             f"The path is {path.length_m:.1f} m long; no line of any kind is shorter than {straight:.1f} m."
         )

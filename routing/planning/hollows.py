@@ -13,6 +13,11 @@ from routing.terrain import water_cells
 _LEAST_DEPTH_M = 0.25
 
 
+def _rounded(volume_m3: float) -> str:
+    """Three figures are more than a DEM knows."""
+    return f"{float(f'{volume_m3:.2e}'):,.0f}"
+
+
 def hollow_note(scene: Scene, setting: Setting) -> tuple[str, ...]:
     """Say how a hollow round the outlet fills, or return nothing where the ground drains on.
 
@@ -34,8 +39,8 @@ def hollow_note(scene: Scene, setting: Setting) -> tuple[str, ...]:
     volume = float(np.sum(np.where(filled, (level - scene.terrain.elevation_m) * area, 0.0)))
     return (
         (
-            f"The outlet lies in a closed hollow: it holds about {volume:,.0f} m3 up to {level:.2f} m, and as it fills the "
-            "water rises over the outlet and the fall shrinks. If more than that is to be let out, set "
+            f"The outlet lies in a closed hollow: it holds about {_rounded(volume)} m3 up to {level:.2f} m, and as it "
+            "fills the water rises over the outlet and the fall shrinks. If more than that is to be let out, set "
             "outlet.tailwater_level_m or move the outlet to ground that drains."
         ),
     )

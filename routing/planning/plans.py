@@ -155,8 +155,8 @@ def _proof_warnings(survey_: _Survey) -> tuple[str, ...]:
     window = survey_.scene.terrain.window
     return (
         (
-            f"The routes are proven only inside the {window.rows} x {window.cols} cells that were read; a better one might "
-            "run outside. Raise search.largest_window_cells to look further."
+            f"The routes are proven only inside the {window.rows} x {window.cols} cells that were read; a better one "
+            "might run outside. Raise search.largest_window_cells to look further."
         ),
     )
 

@@ -85,7 +85,7 @@ def _probe(job: Job, limitation: Limitation) -> tuple[PathEdges | None, bool]:
     length = float(found.length_m[job.goal])
     if not np.isfinite(length):
         return None, not may_escape(job.grid, found, job.band, job.goal, limitation.longest_m)
-    path = path_edges(job.grid, found.path_to(*job.goal), limitation.rule)
+    path = path_edges(job.grid, found.path_to(*job.goal), limitation)
     return path, not may_escape(job.grid, found, job.band, job.goal, length)
 
 
@@ -143,9 +143,9 @@ def largest_discharge(job: Job, flow: Flow, *, tolerance: float = 1e-3) -> Found
 
 def _raise_of(path: PathEdges, limitation: Limitation) -> float:
     """How far the ceiling must be raised for a path."""
-    falling = limitation.ceiling_level_m - limitation.ceiling_gradient * path.far_length_m
+    falling = limitation.ceiling_level_m - limitation.ceiling_gradient * path.at_length_m
     top = np.minimum(falling, limitation.cap_level_m)
-    return float(np.max(path.high_m - top))
+    return float(np.max(path.at_level_m - top))
 
 
 def least_raise(job: Job, limitation: Limitation, *, tolerance_m: float = 0.002) -> Found:

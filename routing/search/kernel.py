@@ -75,6 +75,7 @@ class Rules(NamedTuple):
     cap_level: float
     has_ceiling: bool
     bilinear: bool
+    along: bool  # bilinear ground is held against the ceiling place by place, not at the far end of each edge
     longest: float
     goal_row: int  # -1: no goal
     goal_col: int
@@ -103,11 +104,15 @@ class Field(NamedTuple):
 
 
 @njit(cache=True)
-def edge_high(ground: Ground, moves: Moves, row: int, col: int, move: int) -> float:
-    """Highest bilinear ground along a move: a quadratic in each patch, so the highest is at an end or a vertex."""
+def edge_high(ground: Ground, moves: Moves, row: int, col: int, move: int, tilt: float) -> float:
+    """Highest bilinear ground along a move: a quadratic in each patch, so the highest is at an end or a vertex.
+
+    ``tilt`` is what the ceiling falls by along the move; the ground is then held against the ceiling at each place
+    by lowering it towards the start (0 holds all of it against the ceiling at the far end).
+    """
     cols = ground.cols
     cell = row * cols + col
-    highest = max(ground.level[cell], ground.level[cell + moves.step[move]])
+    highest = max(ground.level[cell] - tilt, ground.level[cell + moves.step[move]])
     for piece in range(moves.piece_start[move], moves.piece_start[move + 1]):
         corner = cell + moves.piece_cell[piece, 0] * cols + moves.piece_cell[piece, 1]
         base = ground.level[corner]
@@ -116,8 +121,10 @@ def edge_high(ground: Ground, moves: Moves, row: int, col: int, move: int) -> fl
         twist = ground.level[corner + cols + 1] - base - along_row - along_col
         row_a, col_a = moves.piece_ends[piece, 0], moves.piece_ends[piece, 1]
         row_d, col_d = moves.piece_ends[piece, 2] - row_a, moves.piece_ends[piece, 3] - col_a
-        start = base + along_row * row_a + along_col * col_a + twist * row_a * col_a
+        share = (moves.piece_cell[piece, 0] + row_a) / moves.drow[move]
+        start = base + along_row * row_a + along_col * col_a + twist * row_a * col_a + tilt * (share - 1.0)
         slope = along_row * row_d + along_col * col_d + twist * (row_a * col_d + col_a * row_d)
+        slope += tilt * row_d / moves.drow[move]
         bend = twist * row_d * col_d
         highest = max(highest, start, start + slope + bend)
         if bend < 0.0 and slope > 0.0 and slope < -2.0 * bend:
@@ -173,19 +180,28 @@ def is_open(ground: Ground, moves: Moves, flags: NDArray[np.uint8], bilinear: bo
 
 
 @njit(cache=True)
-def under_ceiling(ground: Ground, moves: Moves, rules: Rules, row: int, col: int, move: int, length: float) -> bool:
-    """Whether the ground of a move is at or below the ceiling at its far end, reached at ``length``."""
-    top = min(rules.cap_level, rules.ceiling_level - rules.ceiling_gradient * length)
-    cell = row * ground.cols + col
+def under_ceiling(
+    ground: Ground, moves: Moves, rules: Rules, cell: int, move: int, length_from: float, length: float
+) -> bool:
+    """Whether the ground of a move, reached at ``length``, is at or below the ceiling."""
+    falling = rules.ceiling_level - rules.ceiling_gradient * length
+    top = min(rules.cap_level, falling)
     if ground.high[cell] <= top:
         return True
-    if ground.level[cell] > top or ground.level[cell + moves.step[move]] > top:
+    row = cell // ground.cols
+    col = cell - row * ground.cols
+    if ground.level[cell + moves.step[move]] > top:
         return False
     if not rules.bilinear:
         return crossed_high(ground, moves, row, col, move) <= top
     if corner_high(ground, moves, row, col, move) <= top:
         return True
-    return edge_high(ground, moves, row, col, move) <= top
+    if not rules.along:
+        return edge_high(ground, moves, row, col, move, 0.0) <= top
+    if rules.cap_level < np.inf and edge_high(ground, moves, row, col, move, 0.0) > rules.cap_level:
+        return False
+    tilt = rules.ceiling_gradient * (length - length_from)
+    return edge_high(ground, moves, row, col, move, tilt) <= falling
 
 
 @njit(cache=True)
@@ -199,13 +215,13 @@ def source_fits(ground: Ground, rules: Rules, field: Field, cell: int, start: fl
 @njit(cache=True)
 def move_allowed(ground: Ground, moves: Moves, rules: Rules, field: Field, cell: int, move: int, length: float) -> bool:
     """Whether a move that stays on the grid keeps to every rule; cheap rules are looked at first."""
-    row = cell // ground.cols
-    col = cell - row * ground.cols
     if field.flags[cell] & CAREFUL and not is_open(ground, moves, field.flags, rules.bilinear, cell, move):
         return False
     if ground.blocked.size > 0 and (ground.blocked[cell] >> np.uint32(move)) & np.uint32(1):
         return False
-    return not rules.has_ceiling or under_ceiling(ground, moves, rules, row, col, move, length)
+    if not rules.has_ceiling:
+        return True
+    return under_ceiling(ground, moves, rules, cell, move, field.length[cell], length)
 
 
 @njit(cache=True)
@@ -334,7 +350,7 @@ def path_highs(
         row = cells[i] // ground.cols
         col = cells[i] - row * ground.cols
         if bilinear:
-            highest[i] = edge_high(ground, moves, row, col, taken[i])
+            highest[i] = edge_high(ground, moves, row, col, taken[i], 0.0)
         else:
             highest[i] = crossed_high(ground, moves, row, col, taken[i])
     return highest

@@ -11,60 +11,87 @@ from routing.errors import InputError, Problem
 from routing.records import BoolArray, FloatArray
 from routing.search import kernel
 from routing.search.grid import Grid
-from routing.search.reaching import GroundRule, Reach
+from routing.search.reaching import Limitation, Reach
+
+
+# Shares of an edge at which it is looked at: every patch border of every move is among them (halves and thirds).
+_SHARES = np.arange(1, 25) / 24.0
 
 
 @dataclass(frozen=True, slots=True)
 class PathEdges:
-    """A path by its edges, as the search judges them.
+    """A path as the search judges it.
 
     Attributes
     ----------
     cells : (n, 2) int array
         Cells visited.
-    far_length_m : (n,) array
-        Length at the far end of each edge; the first entry is the start itself, at its start length.
-    high_m : (n,) array
-        Highest ground of each edge by the ground rule; the first entry is the start's own ground.
+    length_m
+        Length of the whole path.
+    at_length_m, at_level_m : (m,) arrays
+        What the ceiling must clear: ground levels and the lengths that they count at. By the far-end rule, the
+        start and then the highest ground of each edge at the length of its far end; by the rule along the edge, the
+        ground at 24 places of each.
     """
 
     cells: NDArray[np.intp]
-    far_length_m: FloatArray
-    high_m: FloatArray
-
-    @property
-    def length_m(self) -> float:
-        """Length of the whole path."""
-        return float(self.far_length_m[-1])
+    length_m: float
+    at_length_m: FloatArray
+    at_level_m: FloatArray
 
 
-def path_edges(grid: Grid, cells: NDArray[np.intp], rule: GroundRule, start_length_m: float = 0.0) -> PathEdges:
-    """Work out the edges of a path on the grid.
-
-    Raises
-    ------
-    InputError
-        If two successive cells are not joined by a move of the grid.
-    """
+def _moves_of(grid: Grid, cells: NDArray[np.intp]) -> NDArray[np.intp]:
     moves = grid.moves
     number = {(int(r), int(c)): i for i, (r, c) in enumerate(zip(moves.drow, moves.dcol, strict=True))}
-    steps = np.diff(cells, axis=0)
     try:
-        taken = np.array([number[int(r), int(c)] for r, c in steps], dtype=np.intp)
+        return np.array([number[int(r), int(c)] for r, c in np.diff(cells, axis=0)], dtype=np.intp)
     except KeyError as error:
         raise InputError(
             Problem(
                 "two cells of the path are not one move apart", found=f"{error}", allowed=f"{grid.neighbours} moves"
             )
         ) from error
+
+
+def _ground_at(grid: Grid, row: FloatArray, col: FloatArray) -> FloatArray:
+    """Bilinear ground at places inside the grid."""
+    rows, cols = grid.shape
+    r0 = np.minimum(row.astype(np.intp), max(rows - 2, 0))
+    c0 = np.minimum(col.astype(np.intp), max(cols - 2, 0))
+    r1, c1 = np.minimum(r0 + 1, rows - 1), np.minimum(c0 + 1, cols - 1)
+    y, x = row - r0, col - c0
+    upper = grid.level[r0, c0] * (1.0 - x) + grid.level[r0, c1] * x
+    lower = grid.level[r1, c0] * (1.0 - x) + grid.level[r1, c1] * x
+    ground: FloatArray = upper * (1.0 - y) + lower * y
+    return ground
+
+
+def path_edges(grid: Grid, cells: NDArray[np.intp], limitation: Limitation, start_length_m: float = 0.0) -> PathEdges:
+    """Work out what the search judges of a path, by the rules of a limitation.
+
+    Raises
+    ------
+    InputError
+        If two successive cells are not joined by a move of the grid.
+    """
+    taken = _moves_of(grid, cells)
     flat = (cells[:, 0] * grid.ground.cols + cells[:, 1]).astype(np.intp)
     level = grid.ground.level[flat]
     edge = np.hypot(grid.ground.plan[cells[:-1, 0], taken], np.diff(level))
-    highest = kernel.path_highs(grid.ground, moves, rule == "bilinear", flat[:-1], taken)
+    far = start_length_m + np.concatenate([[0.0], np.cumsum(edge)])
+    if limitation.rule == "bilinear" and limitation.along:
+        row = (cells[:-1, 0:1] + np.diff(cells[:, 0:1], axis=0) * _SHARES).ravel()
+        col = (cells[:-1, 1:2] + np.diff(cells[:, 1:2], axis=0) * _SHARES).ravel()
+        at_length = (far[:-1, None] + edge[:, None] * _SHARES).ravel()
+        at_level = _ground_at(grid, row, col)
+    else:
+        at_length = far[1:]
+        at_level = kernel.path_highs(grid.ground, grid.moves, limitation.rule == "bilinear", flat[:-1], taken)
     return PathEdges(
         cells,
-        start_length_m + np.concatenate([[0.0], np.cumsum(edge)]),
-        np.concatenate([level[:1], highest]),
+        float(far[-1]),
+        np.concatenate([far[:1], at_length]),
+        np.concatenate([level[:1], at_level]),
     )
 
 

@@ -29,6 +29,8 @@ _FIRST_POOL = 16_384
 class Limitation:
     """What a label must keep to: ceiling, cap, longest length, ground rule, and the goal if there is one.
 
+    ``along``: bilinear ground is held against the ceiling at each place of an edge; without it, all of an edge is
+    held against the ceiling at its far end (safe, and coarse where cells are large).
     ``goal``: only this cell matters; the search stops when it is settled, and leaves out cells from which even
     a straight line would exceed ``longest_m``.
     """
@@ -38,6 +40,7 @@ class Limitation:
     cap_level_m: float = np.inf
     longest_m: float = np.inf
     rule: GroundRule = "bilinear"
+    along: bool = False
     goal: CellLike | None = None
 
     def raised(self, by_m: float) -> Limitation:
@@ -160,6 +163,7 @@ def _rules(grid: Grid, limitation: Limitation) -> kernel.Rules:
         cap_level=float(limitation.cap_level_m),
         has_ceiling=bool(min(limitation.ceiling_level_m, limitation.cap_level_m) < np.inf),
         bilinear=limitation.rule == "bilinear",
+        along=limitation.along,
         longest=float(limitation.longest_m),
         goal_row=int(goal[0]),
         goal_col=int(goal[1]),

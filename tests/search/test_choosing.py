@@ -1,5 +1,7 @@
 """Largest discharge and least raise against every simple path of small grids."""
 
+from dataclasses import replace
+
 import numpy as np
 import pytest
 from hypothesis import given, settings
@@ -36,13 +38,13 @@ def carried_at(length):
 
 def carried(far, high, start=START):
     room = (start - high) / (FLAT + STEEP * far)
-    return float(min(np.sqrt(max(room.min(), 0.0)), carried_at(far[-1])))
+    return float(min(np.sqrt(max(room.min(), 0.0)), carried_at(far.max())))
 
 
 def flow(rule, start=START):
     return Flow(
         limit_at=lambda q: Limitation(start - FLAT * q**2, STEEP * q**2, longest_m=longest(q), rule=rule),
-        carried_by=lambda path: carried(path.far_length_m, path.high_m, start),
+        carried_by=lambda path: carried(path.at_length_m, path.at_level_m, start),
         carried_at_length=carried_at,
     )
 
@@ -73,6 +75,23 @@ def test_largest_discharge_equals_every_simple_path(seed, rule, shape):
         assert found.low == pytest.approx(best, rel=2e-3)
         assert found.low <= best * (1 + 1e-9)
         assert found.high >= best * (1 - 1e-9)
+
+
+@settings(max_examples=12, deadline=None)
+@given(st.integers(0, 2**32 - 1), st.sampled_from([(3, 3), (2, 5)]))
+def test_largest_discharge_along_edges_equals_every_simple_path(seed, shape):
+    """Held against the ceiling place by place, as a long section is."""
+    ground = np.random.default_rng(seed).uniform(0.0, 7.0, shape)
+    ground[0, 0], ground[-1, -1] = 0.0, 0.0
+    steps = (np.ones(shape[0]), np.ones(shape[0]))
+    paths = twin.simple_paths_along(ground, steps, (0, 0), (shape[0] - 1, shape[1] - 1), 8)
+    best = max((min(carried(at, level), carried_at(whole)) for at, level, whole in paths), default=0.0)
+    by_edges = flow("bilinear")
+    by_places = replace(by_edges, limit_at=lambda q: replace(by_edges.limit_at(q), along=True))
+    found = largest_discharge(job(ground), by_places)
+    assert found.low == pytest.approx(best, rel=2e-3, abs=1e-6)
+    assert found.high >= best * (1 - 1e-4)
+    assert found.low >= largest_discharge(job(ground), by_edges).low * (1 - 1e-3)
 
 
 @settings(max_examples=15, deadline=None)

@@ -143,6 +143,44 @@ def shortest(
     return labels
 
 
+def along_edge(ground, start, move, length, parts=96):
+    """Return (length, ground) at many places of an edge, the start left out."""
+    if 0 in move:
+        shares = np.array([1.0])
+        return shares * length, np.array([ground[start[0] + move[0], start[1] + move[1]]])
+    lengths, levels = [], []
+    for a, b in pairwise(_shares(move, 0)):
+        middle = (a + b) / 2
+        patch = (math.floor(start[0] + move[0] * middle), math.floor(start[1] + move[1] * middle))
+        for share in np.linspace(float(a), float(b), parts):
+            lengths.append(share * length)
+            levels.append(bilinear(ground, patch, start[0] + move[0] * share, start[1] + move[1] * share))
+    return np.array(lengths), np.array(levels)
+
+
+def simple_paths_along(ground, steps, source, goal, neighbours):
+    """Yield every simple path as (lengths, ground) at many places along it, and its whole length."""
+    barred = np.zeros(ground.shape, dtype=bool)
+    onward = {}
+    for cell in np.ndindex(*ground.shape):
+        onward[cell] = []
+        for move in MOVES[neighbours]:
+            found = edge(ground, steps, cell, move, barred, "bilinear")
+            if found is not None:
+                end = (cell[0] + move[0], cell[1] + move[1])
+                onward[cell].append((end, found[0], *along_edge(ground, cell, move, found[0])))
+
+    def grow(cell, seen, length, lengths, levels):
+        if cell == goal:
+            yield np.concatenate(lengths), np.concatenate(levels), length
+            return
+        for end, step, at, level in onward[cell]:
+            if end not in seen:
+                yield from grow(end, seen | {end}, length + step, [*lengths, length + at], [*levels, level])
+
+    yield from grow(source, {source}, 0.0, [np.zeros(1)], [np.array([ground[source]])])
+
+
 def simple_paths(ground, steps, source, goal, neighbours, rule):
     """Yield every simple path as (lengths at far ends, highest ground of edges), source entry first."""
     barred = np.zeros(ground.shape, dtype=bool)
