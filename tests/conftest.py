@@ -6,7 +6,7 @@ import os
 import shutil
 import subprocess
 import sys
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 from pathlib import Path
 
 import pytest
@@ -36,21 +36,34 @@ def demo(tmp_path: Path) -> Path:
     return folder / "brackenmere" / "site.toml"
 
 
+def run_program(arguments: Sequence[str | Path], cwd: Path, **environment: str) -> subprocess.CompletedProcess[str]:
+    """Run the program as a process of its own and return how it ended."""
+    return subprocess.run(
+        [sys.executable, "-m", "routing.commands", *map(str, arguments)],
+        cwd=cwd,
+        env=os.environ | environment,
+        capture_output=True,
+        text=True,
+        timeout=300,
+        check=False,
+    )
+
+
+@pytest.fixture(scope="session")
+def demo_run(tmp_path_factory: pytest.TempPathFactory) -> tuple[Path, subprocess.CompletedProcess[str]]:
+    """Run the README's job once: the folder it ran in, which holds a copy of ``sample_dem``, and how it ended."""
+    folder = tmp_path_factory.mktemp("readme")
+    shutil.copytree(ROOT / "sample_dem", folder / "sample_dem")
+    return folder, run_program(["plan", "sample_dem/brackenmere/site.toml"], folder)
+
+
 @pytest.fixture
 def overcrest(tmp_path: Path) -> RunProgram:
-    """Run the program as a process of its own, in an empty folder, and return how it ended."""
+    """Return a function that runs the program in an empty folder."""
     folder = tmp_path / "work"
     folder.mkdir()
 
     def run(*arguments: str | Path, cwd: Path = folder, **environment: str) -> subprocess.CompletedProcess[str]:
-        return subprocess.run(
-            [sys.executable, "-m", "routing.commands", *map(str, arguments)],
-            cwd=cwd,
-            env=os.environ | environment,
-            capture_output=True,
-            text=True,
-            timeout=300,
-            check=False,
-        )
+        return run_program(arguments, cwd, **environment)
 
     return run

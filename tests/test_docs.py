@@ -107,22 +107,32 @@ def test_the_check_script_takes_its_command_from_the_readme():
     assert "pip install" not in script
 
 
-def test_the_readme_job_runs_as_written(demo, overcrest):
-    arguments = shlex.split(install_lines()[0].rpartition("&&")[2])[1:]
-    done = overcrest(*arguments, cwd=demo.parents[2])
+def test_the_readme_job_runs_as_written(demo_run):
+    folder, done = demo_run
     assert done.returncode == 0, done.stderr
-    folder = demo.parents[2] / f"{Path(arguments[1]).stem}-plan"
+    words = shlex.split(install_lines()[0].rpartition("&&")[2])
+    assert words == [".venv/bin/overcrest", *done.args[3:]]
     for name in re.findall(r"`([\w-]+\.(?:geojson|csv|json))`", README):
-        assert (folder / name).is_file(), name
-    assert f"`{folder.name}`" in README
+        assert (folder / "site-plan" / name).is_file(), name
+    assert "`site-plan`" in README
 
 
-def test_the_readme_shows_what_really_comes_out(demo, overcrest):
-    done = overcrest("plan", "sample_dem/brackenmere/site.toml", cwd=demo.parents[2])
-    shown = {" ".join(line.split()) for line in done.stdout.splitlines()}
-    (excerpt,) = blocks(README, "text")
-    missing = [line for line in excerpt.splitlines() if line != "..." and " ".join(line.split()) not in shown]
-    assert missing == []
+@pytest.mark.parametrize("page", [ROOT / "README.md", ROOT / "docs" / "tutorial.md"], ids=name_of)
+def test_what_is_shown_is_what_really_comes_out(page, demo, demo_run, overcrest):
+    folder, done = demo_run
+    looked = overcrest("look", "sample_dem/brackenmere/site.toml", cwd=folder)
+    barred = demo.read_text(encoding="utf-8").replace("\n[limits]\n", "\n[limits]\nhighest_lift_m = 4.0\n")
+    demo.write_text(barred, encoding="utf-8")
+    refused = overcrest("plan", demo, cwd=demo.parent)
+    told = done.stdout + looked.stdout + refused.stdout
+    shown = {" ".join(line.split()) for line in told.splitlines()}
+    wanted = [
+        " ".join(line.split())
+        for block in blocks(page.read_text(encoding="utf-8"), "text")
+        for line in block.splitlines()
+    ]
+    assert len(wanted) > 5
+    assert [line for line in wanted if line != "..." and line not in shown] == []
 
 
 def test_the_readme_code_runs(demo):

@@ -13,7 +13,6 @@ from routing.search import kernel
 from routing.search.grid import Grid
 from routing.search.reaching import Limitation, Reach
 
-
 # Shares of an edge at which it is looked at: every patch border of every move is among them (halves and thirds).
 _SHARES = np.arange(1, 25) / 24.0
 

@@ -40,22 +40,25 @@ def work(tmp_path):
     return tmp_path / "work"
 
 
-def test_plan_writes_the_folder_and_prints_the_table(demo, overcrest, work):
-    done = overcrest("plan", demo)
+def test_plan_writes_the_folder_and_prints_the_table(demo_run):
+    folder, done = demo_run
     assert done.returncode == 0, done.stderr
     assert "verdict" in done.stdout
     assert "Cautions" in done.stdout
-    assert left_in(work) == {"site-plan"}
-    assert left_in(work / "site-plan") >= EXPECTED_FILES
-    provenance = json.loads((work / "site-plan" / "run.json").read_text(encoding="utf-8"))
-    assert provenance["command"] == ["overcrest", "plan", str(demo)]
+    assert done.stderr.endswith("results: site-plan\n")
+    assert left_in(folder) == {"sample_dem", "site-plan"}
+    assert left_in(folder / "site-plan") >= EXPECTED_FILES
+    provenance = json.loads((folder / "site-plan" / "run.json").read_text(encoding="utf-8"))
+    assert provenance["run"]["command"] == ["overcrest", "plan", "sample_dem/brackenmere/site.toml"]
 
 
-def test_top_limits_the_table_but_not_the_files(demo, overcrest, work):
-    one, all_of_them = overcrest("plan", demo, "--top", 1), overcrest("plan", demo, "--out", "all", "--top", 50)
-    rows = [len((work / name / "schemes.csv").read_bytes().splitlines()) for name in ("site-plan", "all")]
-    assert rows[0] == rows[1] > 2
-    assert len(one.stdout.splitlines()) < len(all_of_them.stdout.splitlines())
+def test_top_limits_the_table_but_not_the_files(demo, demo_run, overcrest, work):
+    done = overcrest("plan", demo, "--top", 1)
+    folder, usual = demo_run
+    counts = [len((place / "site-plan" / "schemes.csv").read_bytes().splitlines()) for place in (work, folder)]
+    assert counts[0] == counts[1] > 2
+    assert f"and {counts[0] - 2} more in schemes.csv" in done.stdout
+    assert len(done.stdout.splitlines()) < len(usual.stdout.splitlines())
 
 
 def test_plan_with_json_is_one_document(demo, overcrest, work):
@@ -156,7 +159,9 @@ def test_a_taken_folder_is_refused_and_kept(demo, overcrest, work):
 def test_replace_replaces_an_earlier_run(demo, overcrest, work):
     assert overcrest("plan", demo, "--quiet").returncode == 0
     first = (work / "site-plan" / "run.json").stat().st_ino
-    assert overcrest("plan", demo, "--quiet").returncode == 2
+    refused = overcrest("plan", demo, "--quiet")
+    assert refused.returncode == 2
+    assert "--replace" in refused.stderr
     assert overcrest("plan", demo, "--quiet", "--replace").returncode == 0
     assert (work / "site-plan" / "run.json").stat().st_ino != first
     assert left_in(work) == {"site-plan"}
