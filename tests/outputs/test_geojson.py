@@ -205,6 +205,9 @@ def test_points_read_back(plan, tmp_path):
     assert frame.geometry["intake"].x == pytest.approx(plan.setting.intake.lon, abs=1e-7)
     assert frame.geometry["outlet"].y == pytest.approx(plan.setting.outlet.lat, abs=1e-7)
     assert frame.level_m["lowest-crest"] == 103.02
+    assert (frame.level_m["intake"], frame.level_m["outlet"]) == (97.5, 92.0)
+    found = {f["id"]: f["properties"]["proven"] for f in points_layer(plan)["features"]}
+    assert (found["lowest-crest"], found["spill"], found["outlet"]) == (True, False, None)
     assert frame.level_m["crest-R1"] == 103.4
     assert frame.chainage_m["crest-R1"] == pytest.approx(110.4, abs=0.5)
     metres = frame.to_crs("EPSG:32632")
