@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import importlib.util
 import re
 import shlex
 import subprocess
@@ -117,22 +118,30 @@ def test_the_readme_job_runs_as_written(demo_run):
     assert "`site-plan`" in README
 
 
-@pytest.mark.parametrize("page", [ROOT / "README.md", ROOT / "docs" / "tutorial.md"], ids=name_of)
-def test_what_is_shown_is_what_really_comes_out(page, demo, demo_run, overcrest):
-    folder, done = demo_run
-    looked = overcrest("look", "sample_dem/brackenmere/site.toml", cwd=folder)
-    barred = demo.read_text(encoding="utf-8").replace("\n[limits]\n", "\n[limits]\nhighest_lift_m = 4.0\n")
-    demo.write_text(barred, encoding="utf-8")
-    refused = overcrest("plan", demo, cwd=demo.parent)
-    told = done.stdout + looked.stdout + refused.stdout
-    shown = {" ".join(line.split()) for line in told.splitlines()}
-    wanted = [
-        " ".join(line.split())
-        for block in blocks(page.read_text(encoding="utf-8"), "text")
-        for line in block.splitlines()
+@pytest.fixture(scope="module")
+def refresh():
+    """The script that makes parts of the pages."""
+    spec = importlib.util.spec_from_file_location("refresh", ROOT / "docs" / "refresh.py")
+    module = importlib.util.module_from_spec(spec)
+    spec.loader.exec_module(module)
+    return module
+
+
+def test_what_is_shown_is_what_really_comes_out(refresh):
+    for path, text in refresh.pages().items():
+        assert path.read_text(encoding="utf-8") == text, f"{name_of(path)} is stale: run python docs/refresh.py"
+
+
+def test_an_excerpt_is_made_anew_and_the_rest_kept(refresh):
+    page = "before\n\n<!-- shown: look -->\n```text\nold\n```\n\nafter\n\n```text\nkept\n```\n"
+    assert refresh.refreshed(page, {"look": ["new", "lines"]}) == page.replace("old", "new\nlines")
+
+
+def test_both_pages_show_a_run(refresh):
+    names = [
+        refresh.MARK.findall((ROOT / name).read_text(encoding="utf-8")) for name in ("README.md", "docs/tutorial.md")
     ]
-    assert len(wanted) > 5
-    assert [line for line in wanted if line != "..." and line not in shown] == []
+    assert names == [["schemes"], ["look", "schemes", "best", "no-route"]]
 
 
 def test_the_readme_code_runs(demo):

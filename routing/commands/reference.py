@@ -1,7 +1,6 @@
 """The reference page of the commands, made from the commands themselves.
 
-``python -m routing.commands.reference`` prints it; ``docs/reference/commands.md`` holds it, and a test
-compares the two.
+``docs/reference/commands.md`` holds it; ``docs/refresh.py`` makes it, and a test compares the two.
 """
 
 from __future__ import annotations
@@ -11,12 +10,11 @@ import inspect
 import click
 
 from routing.commands.group import COMMANDS, overcrest
-from routing.commands.streams import emit
 
 _HEAD = """\
 # Commands
 
-Made from the program by `python -m routing.commands.reference`; do not edit by hand.
+Made from the program by `docs/refresh.py`; do not edit by hand.
 
 Results go to stdout; progress and notes go to stderr. The exit codes are listed in
 [Exit codes and errors](errors.md). `overcrest --version` prints the version, `overcrest COMMAND --help`
@@ -60,7 +58,3 @@ def _row(option: click.Option) -> str:
     value = "" if option.is_flag else f" {option.metavar or 'PATH'}"
     default = f" Default: `{option.default}`." if option.show_default else ""
     return f"| {names}{value} | {option.help}{default} |"
-
-
-if __name__ == "__main__":
-    emit(commands_page().rstrip("\n"))

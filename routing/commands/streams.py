@@ -100,9 +100,10 @@ def library_warnings(*, shown: bool) -> Iterator[None]:
         category: type[Warning],
         filename: str,
         lineno: int,
-        _file: TextIO | None = None,
-        _line: str | None = None,
+        file: TextIO | None = None,
+        line: str | None = None,
     ) -> None:
+        del file, line
         if shown:
             note(f"library warning: {category.__name__}: {message} ({filename}:{lineno})")
 

@@ -1,0 +1,88 @@
+"""Puts into the pages what the program really says: the reference pages, and the excerpts of a run on the demo site.
+
+Run it as ``python docs/refresh.py`` after a change that shows. A test makes everything again and compares.
+"""
+
+from __future__ import annotations
+
+import re
+import shutil
+import subprocess
+import sys
+import tempfile
+from pathlib import Path
+
+from routing.commands.reference import commands_page
+from routing.outputs import fields_page
+from routing.site import reference_page
+
+ROOT = Path(__file__).resolve().parent.parent
+SITE = "sample_dem/brackenmere/site.toml"
+#: The change that the tutorial makes to the demo site, after which no route works.
+LIMIT = "highest_lift_m = 4.0"
+#: An excerpt: its name in a comment that readers do not see, then a block.
+MARK = re.compile(r"(?<=<!-- shown: )(\S+) -->\n```text\n.*?^```", re.MULTILINE | re.DOTALL)
+
+
+def run(folder: Path, *arguments: str) -> list[str]:
+    """Return what a call of the program prints, line by line."""
+    call = [sys.executable, "-m", "routing.commands", *arguments]
+    done = subprocess.run(call, cwd=folder, capture_output=True, text=True, check=False)  # noqa: S603
+    if not done.stdout:
+        raise SystemExit(done.stderr)
+    return done.stdout.splitlines()
+
+
+def first_rows(lines: list[str], rows: int) -> list[str]:
+    """Return the headline and the first rows of the table."""
+    end = next(k for k, line in enumerate(lines) if re.match(rf" *{rows + 1}  R", line) or line.startswith("Prices"))
+    return [*lines[1:end], "..."]
+
+
+def paragraph(lines: list[str], start: str) -> list[str]:
+    """Return the lines from one that begins with `start` to the next empty one."""
+    first = next(k for k, line in enumerate(lines) if line.startswith(start))
+    return lines[first : lines.index("", first)]
+
+
+def excerpts() -> dict[str, list[str]]:
+    """Run the demo job, and the tutorial's change of it, in a copy; return the excerpts by name."""
+    with tempfile.TemporaryDirectory() as name:
+        folder = Path(name)
+        shutil.copytree(ROOT / "sample_dem", folder / "sample_dem")
+        look, plan = run(folder, "look", SITE), run(folder, "plan", SITE)
+        site = folder / SITE
+        text = site.read_text(encoding="utf-8").replace("[limits]\n", f"[limits]\n{LIMIT}\n")
+        site.write_text(text, encoding="utf-8")
+        none = run(folder, "plan", SITE, "--replace")
+    facts = [line for line in look[1 : look.index("Assumptions") - 1] if not line.startswith("file ")]
+    return {
+        "look": facts,
+        "schemes": first_rows(plan, 3),
+        "best": paragraph(plan, "Scheme "),
+        "no-route": [*paragraph(none, "No route works"), "...", *paragraph(none, "What would help")],
+    }
+
+
+def refreshed(page: str, shown: dict[str, list[str]]) -> str:
+    """Return a page with its excerpts made anew."""
+    return MARK.sub(lambda mark: "\n".join([f"{mark[1]} -->", "```text", *shown[mark[1]], "```"]), page)
+
+
+def pages() -> dict[Path, str]:
+    """Return the text that every page with made parts should have."""
+    shown = excerpts()
+    reference = ROOT / "docs" / "reference"
+    made = {
+        reference / "commands.md": commands_page().rstrip("\n") + "\n",
+        reference / "fields.md": fields_page(),
+        reference / "site-file.md": reference_page(),
+    }
+    for path in (ROOT / "README.md", ROOT / "docs" / "tutorial.md"):
+        made[path] = refreshed(path.read_text(encoding="utf-8"), shown)
+    return made
+
+
+if __name__ == "__main__":
+    for target, content in pages().items():
+        target.write_text(content, encoding="utf-8", newline="\n")
