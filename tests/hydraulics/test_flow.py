@@ -80,6 +80,18 @@ def test_many_points_equal_the_least_of_single_ones():
         assert pipe.largest_velocity_under_ms(headroom, local, at) == pytest.approx(min(single), rel=1e-13)
 
 
+def test_a_far_point_that_is_tighter_by_a_hair_is_found():
+    # In a small pipe f is above the 0.02 of the first guess, so that the near point is taken for the tightest.
+    pipe = conduit(0.02, 0.005)
+    head, factor = pipe.velocity_head_m(0.8), pipe.factor(0.8)
+    assert factor > 0.03
+    local, at = np.array([1.5, 1.5]), np.array([0.0, 100.0])
+    headroom = head * np.array([1.5, (1.5 + factor * 100.0 / 0.02) * (1 - 5e-4)])
+    found = pipe.largest_velocity_under_ms(headroom, local, at)
+    assert found < 0.8 * (1 - 2e-4)
+    assert loss(pipe, found, 1.5, 100.0) == pytest.approx(headroom[1], rel=1e-12)
+
+
 def test_many_points_edges():
     pipe, none = conduit(0.1), np.array([])
     assert pipe.largest_velocity_under_ms(none, none, none) == math.inf

@@ -50,6 +50,7 @@ def test_arrays_broadcast():
 def test_laminar_up_to_the_critical_reynolds_number_then_a_jump_up():
     assert darcy_factor(1000.0, 0.05) == 0.064
     assert darcy_factor(CRITICAL_REYNOLDS, 0.0) == 64.0 / CRITICAL_REYNOLDS
+    assert darcy_factor(np.array([CRITICAL_REYNOLDS]), 0.0)[0] == 64.0 / CRITICAL_REYNOLDS
     assert darcy_factor(CRITICAL_REYNOLDS * (1 + 1e-12), 0.0) > 1.5 * 64.0 / CRITICAL_REYNOLDS
 
 
