@@ -67,7 +67,8 @@ def energy_discharge_m3s(
     """Return the discharge in m3/s that uses up the whole fall over a length, outlet valve open.
 
     ``H - receiving level = (K_in + K_exit + K_valve + K_fittings + bends L + f L/D) V^2/2g``; 0 where there is no
-    fall. Where the fall lies in the jump between laminar and turbulent loss it is the discharge at the jump.
+    fall, ``inf`` where nothing resists (no length, no local loss). Where the fall lies in the jump between laminar and
+    turbulent loss it is the discharge at the jump.
 
     Parameters
     ----------

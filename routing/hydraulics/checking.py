@@ -59,6 +59,7 @@ def _limit_rows(limits: Limits) -> Iterator[_Row]:
     if limits.highest_lift_m is not None:
         yield "highest lift", limits.highest_lift_m, 0.0, 100.0, "m"
     yield "least submergence of the intake", limits.least_submergence_m, 0.0, 100.0, "m"
+    yield "factor of safety against collapse", limits.collapse_safety, 1.0, 10.0, ""
     yield "acceleration of gravity", limits.gravity_ms2, 9.7, 9.9, "m/s2"
 
 

@@ -87,7 +87,7 @@ class Conduit:
         Parameters
         ----------
         head_m
-            Head that may be lost; 0 or less gives 0.
+            Head that may be lost; 0 or less gives 0. Where nothing resists, more than 0 gives ``inf``.
         local
             Sum of local losses K, with a velocity head counted as 1.
         length_m
@@ -100,6 +100,8 @@ class Conduit:
         if self.fixed_factor is not None:
             resistance = local + self.fixed_factor * slender
             return math.sqrt(g2 * head_m / resistance) if resistance > 0.0 else math.inf
+        if local <= 0.0 and slender <= 0.0:
+            return math.inf
         # Laminar: f L/D V^2/2g is linear in V, which leaves a quadratic.
         linear = 64.0 * self.viscosity_m2s * slender / (g2 * self.bore_m)
         velocity = 2.0 * head_m / (linear + math.sqrt(linear * linear + 4.0 * (local / g2) * head_m))
