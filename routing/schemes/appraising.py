@@ -40,12 +40,12 @@ def high_points_m(profile: Profile, above_m: float, least_dip_m: float) -> tuple
     above_m
         Only high points above this level count (below the water surface the pressure keeps air small).
     least_dip_m
-        A high point counts where the crown falls by at least this much on both sides before rising again.
+        A high point counts where the crown falls by more than this on both sides before it rises higher.
     """
-    peaks: list[int] = []
-    peak, trough = 0, 0
-    rising = True
     crown = profile.crown_m
+    peaks: list[int] = []
+    # The ends are no high points: the first one can only come after a rise.
+    rising, peak, trough = False, 0, 0
     for i in range(1, crown.size):
         if rising:
             if crown[i] > crown[peak]:

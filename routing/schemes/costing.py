@@ -2,11 +2,15 @@
 
 from __future__ import annotations
 
+import math
+
 from routing.records import Cost, CostLine, Pipe, PriceList
 
 
 def price_scheme(pipe: Pipe, length_m: float, count: int, prices: PriceList) -> Cost:
     """Price a number of parallel pipes of one length.
+
+    Each amount is rounded to a hundredth of the currency, so that the lines add up to the total as printed.
 
     Parameters
     ----------
@@ -27,7 +31,9 @@ def price_scheme(pipe: Pipe, length_m: float, count: int, prices: PriceList) -> 
         ("fixed items of the scheme", 1.0, "scheme", prices.fixed_per_scheme),
     )
     lines = tuple(
-        CostLine(text, quantity, unit, rate, quantity * rate) for text, quantity, unit, rate in rows if rate != 0.0
+        CostLine(text, quantity, unit, rate, round(quantity * rate, 2))
+        for text, quantity, unit, rate in rows
+        if rate != 0.0
     )
-    total = sum(line.amount for line in lines)
-    return Cost(lines, float(total), prices.currency, prices.date, prices.invented)
+    total = round(math.fsum(line.amount for line in lines), 2)
+    return Cost(lines, total, prices.currency, prices.date, prices.invented)
