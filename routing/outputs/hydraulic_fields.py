@@ -247,7 +247,7 @@ PRESSURE_FIELDS: tuple[SchemeField, ...] = (
         3,
         "Metres of water left above that reserve at duty and lowest level; negative: missing.",
         lambda _, s: s.appraisal.reserve_left_m,
-        Shown("reserve left", "m", 1.0, "two"),
+        Shown("reserve", "left, m", 1.0, "two"),
     ),
     Field(
         "governing_chainage_m",
@@ -290,5 +290,12 @@ PRESSURE_FIELDS: tuple[SchemeField, ...] = (
         "Level of the water body at which the siphon stops.",
         lambda _, s: s.appraisal.breaking_level_m,
     ),
-    Field("breaking_cause", "", "text", None, "Why it stops there.", lambda _, s: s.appraisal.largest.breaking_cause),
+    Field(
+        "breaking_cause",
+        "",
+        "text",
+        None,
+        "Why it stops there: `suction` (the limit leaves no flow), `outlet` (level with it), `intake` (draws air).",
+        lambda _, s: s.appraisal.largest.breaking_cause,
+    ),
 )

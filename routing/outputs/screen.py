@@ -16,11 +16,21 @@ from routing.outputs.fields import SCHEME_FIELDS
 from routing.outputs.pieces import MOST_LINES, bullets, heading
 from routing.outputs.runfile import prices_invented
 from routing.outputs.values import Value, clean
-from routing.outputs.wording import best_scheme, counted, figures, fixed, headline, least_shortfall, litres, remedies
-from routing.records import Grade, Plan, Scheme
+from routing.outputs.wording import (
+    best_scheme,
+    breaking_text,
+    counted,
+    figures,
+    fixed,
+    headline,
+    least_shortfall,
+    litres,
+)
+from routing.records import Grade, Plan, Scheme, Verdict
 
 #: Rows of the table where nothing else is asked; the rest is in ``schemes.csv``.
 MOST_ROWS = 12
+_LEAST_WIDTH = 22
 GRADE_STYLES: dict[Grade, str] = {"fit": "bold blue", "caution": "bold yellow", "unfit": "bold magenta"}
 
 
@@ -60,19 +70,29 @@ def scheme_table(plan: Plan, top: int = MOST_ROWS) -> Table:
     for field, how in shown:
         unit = plan.schemes[0].cost.currency if field.unit == "currency" else how.unit
         words = how.style == "text"
+        # A name is folded only where it is long: without a least width the last column would squeeze it.
+        longest = max(len(shown_text(how, clean(field.get(plan, scheme)))) for scheme in plan.schemes[:top])
         table.add_column(
             Text(f"{how.head}\n{unit}".rstrip()),
             justify="left" if words else "right",
             no_wrap=not words,
+            min_width=min(longest, _LEAST_WIDTH) if words else None,
             overflow="fold",
         )
     table.add_column("verdict", no_wrap=True)
     table.add_column("decided by", overflow="fold")
     for scheme in plan.schemes[:top]:
         cells = [Text(shown_text(how, clean(field.get(plan, scheme)))) for field, how in shown]
-        grade = Text(scheme.verdict.grade, style=GRADE_STYLES[scheme.verdict.grade])
-        table.add_row(*cells, grade, Text(scheme.verdict.governing.title))
+        table.add_row(*cells, _verdict_text(scheme.verdict), Text(scheme.verdict.governing.title))
     return table
+
+
+def _verdict_text(verdict: Verdict) -> Text:
+    """Return the verdict, and in brackets what it would be without the checks not made."""
+    found = Text(verdict.grade, style=GRADE_STYLES[verdict.grade])
+    if verdict.grade_of_made != verdict.grade:
+        found.append(f" ({verdict.grade_of_made})", style=GRADE_STYLES[verdict.grade_of_made])
+    return found
 
 
 def shown_text(how: Shown, value: Value) -> str:
@@ -91,6 +111,8 @@ def _table_notes(plan: Plan, top: int) -> list[RenderableType]:
     found: list[RenderableType] = []
     if len(plan.schemes) > top:
         found.append(Text(f"and {len(plan.schemes) - top} more in schemes.csv", style="dim"))
+    if any(scheme.verdict.grade_of_made != scheme.verdict.grade for scheme in plan.schemes[:top]):
+        found.append(Text("in brackets: the verdict without the checks not made", style="dim"))
     if prices_invented(plan):
         found.append(Text(INVENTED_PRICES, style="bold"))
     return found
@@ -102,23 +124,22 @@ def _best_notes(best: Scheme) -> list[str]:
     at_lowest, at_present = litres(run.discharge_m3s), litres(run.present.discharge_m3s)
     found = [
         f"Limited by {run.governs}: {at_lowest} a pipe at the lowest level, {at_present} at the present level.",
-        f"Stops when the water is down to {fixed(run.breaking_level_m, 2)} m: {run.largest.breaking_cause}.",
+        breaking_text(run.breaking_level_m, run.largest.breaking_cause),
         f"Proven for {scope}. {proof.text}",
     ]
     not_made = best.verdict.not_made
     if not_made:
-        names = ", ".join(check.title for check in not_made[:MOST_LINES])
-        more = f" and {len(not_made) - MOST_LINES} more" if len(not_made) > MOST_LINES else ""
+        names = "; ".join(check.title for check in not_made[:MOST_LINES])
+        more = f"; and {len(not_made) - MOST_LINES} more" if len(not_made) > MOST_LINES else ""
         found.append(f"{counted(len(not_made), 'check')} not made: {names}{more}. See checks.csv.")
     return found
 
 
 def _shortfall_notes(plan: Plan) -> list[RenderableType]:
     least = least_shortfall(plan)
-    if least is None:
+    # Where nothing works, the least shortfall is the headline already.
+    left = [s for s in plan.shortfalls if plan.feasible or s is not least]
+    if not left:
         return []
-    lines = [s.text if s.pipe in s.text else f"{s.pipe}: {s.text}" for s in plan.shortfalls]
-    found: list[RenderableType] = ["", heading("No route for"), bullets(lines, "in run.json")]
-    if not plan.feasible:
-        found += ["", heading("What would help, any one of"), bullets(remedies(least, plan.setting))]
-    return found
+    lines = [s.text if s.pipe in s.text else f"{s.pipe}: {s.text}" for s in left]
+    return ["", heading("No route for"), bullets(lines, "in run.json")]

@@ -7,6 +7,11 @@ import math
 from routing.records import Plan, Scheme, Setting, Shortfall
 
 _GROUPED_FROM = 10_000.0
+_BREAKING: dict[str, str] = {
+    "suction": "from there the crown pressure allows no flow",
+    "outlet": "it then stands level with the outlet",
+    "intake": "the intake mouth then draws air",
+}
 
 
 def figures(value: float | None, digits: int = 3) -> str:
@@ -91,8 +96,32 @@ def _best_text(plan: Plan, best: Scheme) -> str:
     asked = plan.site.demand.discharge_m3s
     asked_text = "" if asked is None else f" ({litres(asked)} asked)"
     together = "" if best.count == 1 else " together"
+    standing = sum(scheme.verdict.grade != "unfit" for scheme in plan.schemes)
+    length, lift = fixed(best.route.length_m, 0), fixed(best.appraisal.lift_m, 2)
     return (
-        f"Best of {counted(len(plan.schemes), 'scheme')}: {scheme_text(best)}, {fixed(best.route.length_m, 0)} m long, "
+        f"Best of {counted(standing, 'scheme')} within all limits: {scheme_text(best)}, {length} m long, lift {lift} m, "
+        f"up to {litres(best.total_discharge_m3s)}{together} at the lowest level{asked_text}. "
+        f"Verdict {best.verdict.grade}: {best.verdict.reason.rstrip('.')}."
+    )
+
+
+def best_scheme(plan: Plan) -> Scheme | None:
+    """Return the first scheme in the ranking that breaks no limit, or ``None``."""
+    return next((scheme for scheme in plan.schemes if scheme.verdict.grade != "unfit"), None)
+
+
+def scheme_text(scheme: Scheme) -> str:
+    """Return a scheme in a few words: ``2 x PE 315 on route R1``."""
+    return f"{scheme.count} x {scheme.pipe.name} on route {scheme.route.name}"
+
+
+def _best_text(plan: Plan, best: Scheme) -> str:
+    asked = plan.site.demand.discharge_m3s
+    asked_text = "" if asked is None else f" ({litres(asked)} asked)"
+    together = "" if best.count == 1 else " together"
+    standing = sum(scheme.verdict.grade != "unfit" for scheme in plan.schemes)
+    return (
+        f"Best of {counted(standing, 'scheme')} within all limits: {scheme_text(best)}, {fixed(best.route.length_m, 0)} m long, "
         f"lift {fixed(best.appraisal.lift_m, 2)} m, up to {litres(best.total_discharge_m3s)}{together} at the lowest "
         f"level{asked_text}. Verdict {best.verdict.grade}: {best.verdict.reason.rstrip('.')}."
     )
@@ -112,30 +141,7 @@ def least_shortfall(plan: Plan) -> Shortfall | None:
     return min(plan.shortfalls, key=lambda s: math.inf if s.raise_m is None else s.raise_m)
 
 
-def remedies(shortfall: Shortfall, setting: Setting) -> list[str]:
-    """Return what would help against a shortfall, in metres where that is known.
-
-    Parameters
-    ----------
-    shortfall
-        What is missing.
-    setting
-        Gives the reserve asked for (giving up more than that is no remedy) and the levels.
-    """
-    if shortfall.cause == "cut off":
-        return ["a DEM without the gap, or an end on the other side of it"]
-    if shortfall.cause == "energy":
-        return ["a lower outlet", "a larger pipe", "more pipes side by side", "a smaller discharge"]
-    if shortfall.raise_m is None:
-        return ["another outlet or intake: no raise of the ceiling alone makes a route"]
-    missing = fixed(math.ceil(100.0 * shortfall.raise_m) / 100.0, 2)
-    level_m = setting.lowest.water_m + shortfall.raise_m
-    above = ", which is above the present level" if level_m > setting.present.water_m else ""
-    found = [
-        f"a trench {missing} m deep where the ground is too high",
-        f"a lowest level {missing} m higher{above}",
-        "a smaller discharge or a larger pipe, as far as losses before the crest are to blame",
-    ]
-    if shortfall.raise_m < setting.limits.reserve_m:
-        found.insert(2, f"{missing} m less reserve, if whoever answers for the design accepts that")
-    return found
+def breaking_text(level_m: float, cause: str) -> str:
+    """Return where and why a siphon stops, as a sentence."""
+    why = _BREAKING.get(cause, cause)
+    return f"Stops when the water is down to {fixed(level_m, 2)} m: {why}."

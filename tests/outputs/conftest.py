@@ -53,6 +53,7 @@ WATER = Water(999.7, 1.306e-6, 1228.0, 10.0)  # 10 degC, recalled round values
 LIMITS = Limits(96_000.0, 2.5, None, 0.3, 2.0, G)
 LOWEST = Levels(100.0, 92.0, None, 97.5)
 PRESENT = Levels(102.0, 92.0, None, 97.5)
+HELP = "What would help: a trench in the ridge, or a lowest level higher than now."
 ASSUMPTIONS = (
     "the DEM shows the flat water surface of the survey day",
     "air pressure: standard atmosphere at 250 m, less 3000 Pa for a barometric low",
@@ -136,7 +137,7 @@ def make_run(route: Route, crown, pipe: Pipe, discharge: float, levels: Levels, 
         pressure,
         float(reserve[worst]),
         97.8,
-        "the intake mouth would draw air",
+        "intake",
     )
 
 
@@ -293,7 +294,9 @@ class Maker:
         plan = self.plan()
         shortfalls = (
             Shortfall("PE 250 SDR 17", 0.05, "suction", 1.347, "the ground is 1.35 m too high for 50 l/s"),
-            Shortfall("PE 315 SDR 17", 0.05, "suction", 0.912, "the ground is 0.92 m too high for 50 l/s"),
+            Shortfall(
+                "PE 315 SDR 17", 0.05, "suction", 0.912, "PE 315 SDR 17: the ground is too high by 0.92 m. " + HELP
+            ),
             Shortfall("steel 219.1 x 4", 0.05, "cut off", None, "no ground with data joins intake and outlet"),
         )
         return replace(plan, schemes=plan.schemes[3:], shortfalls=shortfalls, lowest_crest=None)

@@ -43,7 +43,7 @@ def test_what_a_plan_document_holds(plan):
     assert found["document"] == "plan"
     assert found["title"] == plan.site.title
     assert found["feasible"] is True
-    assert found["headline"].startswith("Best of 4 schemes: 1 x PE 315 SDR 17 on route R1")
+    assert found["headline"].startswith("Best of 3 schemes within all limits: 1 x PE 315 SDR 17 on route R1")
     assert len(found["schemes"]) == 4
     assert found["shortfalls"][0]["cause"] == "energy"
     assert found["assumptions"] == list(plan.assumptions)
@@ -86,7 +86,7 @@ def test_schemes_hold_all_fields_checks_and_costs(plan):
 def test_no_route(make):
     found = plan_document(make.no_route())
     assert found["feasible"] is False
-    assert "0.92 m too high" in found["headline"]
+    assert "too high by 0.92 m" in found["headline"]
     assert found["lowest_crest"] is None
     assert [row["raise_m"] for row in found["shortfalls"]] == [1.347, 0.912, None]
 

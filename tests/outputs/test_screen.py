@@ -34,7 +34,21 @@ def test_it_fits_100_columns(screen, make):
 def test_the_table_holds_one_line_a_scheme(plan):
     head, units, *rows = shown(scheme_table(plan)).splitlines()
     assert head.split()[:4] == ["total", "length", "lift", "reserve"]
-    assert units.split() == ["#", "route", "pipe", "n", "l/s", "m", "m", "m", "EUR", "verdict", "decided", "by"]
+    assert units.split() == [
+        "#",
+        "route",
+        "pipe",
+        "n",
+        "l/s",
+        "m",
+        "m",
+        "left,",
+        "m",
+        "EUR",
+        "verdict",
+        "decided",
+        "by",
+    ]
     lines = [row.split() for row in rows]
     assert len(lines) == 4
     assert lines[0] == [
@@ -81,14 +95,13 @@ def test_what_is_said(screen, plan):
     found = flat(screen)
     assert plan.site.title in found
     assert "Limited by energy: 121 l/s a pipe at the lowest level, 133 l/s at the present level." in found
-    assert "Stops when the water is down to 97.80 m: the intake mouth would draw air." in found
+    assert "Stops when the water is down to 97.80 m: the intake mouth then draws air." in found
     assert "Proven for the whole DEM." in found
     assert "1 check not made: Air drawn at the outlet. See checks.csv." in found
     assert "steel 168.3 x 4: the fall of 8.00 m carries 31 l/s at most" in found
     assert "the DEM's edge cuts the lake" in found
     assert "3 assumptions made: listed in run.json." in found
     assert all(caution in found for caution in CAUTIONS)
-    assert "What would help" not in found
 
 
 def test_a_proof_of_the_window_only_is_not_called_more(plan):
@@ -105,9 +118,29 @@ def test_invented_prices_are_marked(plan):
 
 def test_no_route_says_why_and_what_would_help(make):
     found = flat(shown(summary(make.no_route())))
-    assert "No route works. The ground is 0.92 m too high for 50 l/s." in found
-    assert "What would help, any one of - a trench 0.92 m deep" in found
+    assert "No route works. PE 315 SDR 17: the ground is too high by 0.92 m. What would help: a trench" in found
+    assert found.count("0.92 m") == 1  # the headline is not said again
+    assert "PE 250 SDR 17: the ground is 1.35 m too high for 50 l/s" in found
     assert "Limited by" not in found
+
+
+def test_a_verdict_that_rests_on_checks_not_made_shows_the_other(plan):
+    best = plan.schemes[0]
+    waiting = replace(best, verdict=replace(best.verdict, grade="caution"))
+    found = flat(shown(summary(replace(plan, schemes=(waiting,)))))
+    assert "caution (fit) Crown pressure" in found
+    assert "in brackets: the verdict without the checks not made" in found
+    assert "in brackets" not in flat(shown(summary(plan)))
+
+
+def test_names_of_usual_length_are_not_folded(plan):
+    best = plan.schemes[0]
+    long_title = replace(best.verdict.governing, title="Collapse of the pipe wall while running, at the crest")
+    pipe = replace(best.pipe, name="PE100 RC 315 SDR 17.6")
+    wide = replace(plan, schemes=(replace(best, pipe=pipe, verdict=replace(best.verdict, governing=long_title)),))
+    text = shown(scheme_table(wide))
+    assert "PE100 RC 315 SDR 17.6" in text
+    assert max(len(line.rstrip()) for line in text.splitlines()) <= 100
 
 
 def test_nothing_at_all_is_no_trouble(make):

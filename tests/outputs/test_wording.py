@@ -4,17 +4,16 @@ import pytest
 
 from routing.outputs.wording import (
     best_scheme,
+    breaking_text,
     counted,
     figures,
     fixed,
     headline,
     least_shortfall,
     litres,
-    remedies,
     sentence,
     still_water_lift_m,
 )
-from routing.records import Shortfall
 
 
 @pytest.mark.parametrize(
@@ -70,6 +69,7 @@ def test_headline_names_the_best_scheme_that_breaks_no_limit(plan):
     unfit_first = replace(plan, schemes=(plan.schemes[3], *plan.schemes[:3]))
     assert best_scheme(unfit_first) is plan.schemes[0]
     for found in (headline(plan), headline(unfit_first)):
+        assert found.startswith("Best of 3 schemes within all limits: ")
         assert "1 x PE 315 SDR 17 on route R1, 281 m long, lift 3.72 m, up to 121 l/s" in found
         assert "(100 l/s asked)" in found
         assert found.endswith("Verdict fit: reserve left 2.32 m.")
@@ -86,7 +86,7 @@ def test_headline_without_a_demand_asks_nothing(plan):
 
 def test_headline_where_nothing_works(make):
     plan = make.no_route()
-    assert headline(plan) == "No route works. The ground is 0.92 m too high for 50 l/s."
+    assert headline(plan).startswith("No route works. PE 315 SDR 17: the ground is too high by 0.92 m. What would help")
     assert headline(replace(plan, shortfalls=())) == (
         "No route works. Nearest is 1 x PE 250 SDR 17 on route R2: 0.80 m of reserve missing."
     )
@@ -100,21 +100,7 @@ def test_least_shortfall(make):
     assert least_shortfall(replace(plan, shortfalls=())) is None
 
 
-def test_remedies_are_in_metres_rounded_up(make):
-    setting = make.setting(make.place())
-    found = remedies(Shortfall("p", 0.05, "suction", 0.912, "x"), setting)
-    assert "a trench 0.92 m deep where the ground is too high" in found
-    assert "a lowest level 0.92 m higher" in found
-    assert any(text.startswith("0.92 m less reserve") for text in found)
-
-
-def test_remedies_that_cannot_be_are_not_offered(make):
-    setting = make.setting(make.place())
-    found = remedies(Shortfall("p", 0.05, "suction", 3.0, "x"), setting)
-    assert not any("less reserve" in text for text in found)  # only 2.5 m are kept
-    assert "a lowest level 3.00 m higher, which is above the present level" in found
-
-
-@pytest.mark.parametrize("cause", ["energy", "cut off", "suction"])
-def test_every_cause_has_a_remedy(make, cause):
-    assert remedies(Shortfall("p", None, cause, None, "x"), make.setting(make.place()))
+def test_breaking_level_says_why():
+    assert breaking_text(97.8, "intake") == "Stops when the water is down to 97.80 m: the intake mouth then draws air."
+    assert breaking_text(97.8, "a cause of another kind").endswith("97.80 m: a cause of another kind.")
+    assert len({breaking_text(1.0, cause) for cause in ("suction", "outlet", "intake")}) == 3
