@@ -99,31 +99,9 @@ def _best_text(plan: Plan, best: Scheme) -> str:
     standing = sum(scheme.verdict.grade != "unfit" for scheme in plan.schemes)
     length, lift = fixed(best.route.length_m, 0), fixed(best.appraisal.lift_m, 2)
     return (
-        f"Best of {counted(standing, 'scheme')} within all limits: {scheme_text(best)}, {length} m long, lift {lift} m, "
-        f"up to {litres(best.total_discharge_m3s)}{together} at the lowest level{asked_text}. "
+        f"Best of {counted(standing, 'scheme')} within all limits: {scheme_text(best)}, {length} m long, "
+        f"lift {lift} m, up to {litres(best.total_discharge_m3s)}{together} at the lowest level{asked_text}. "
         f"Verdict {best.verdict.grade}: {best.verdict.reason.rstrip('.')}."
-    )
-
-
-def best_scheme(plan: Plan) -> Scheme | None:
-    """Return the first scheme in the ranking that breaks no limit, or ``None``."""
-    return next((scheme for scheme in plan.schemes if scheme.verdict.grade != "unfit"), None)
-
-
-def scheme_text(scheme: Scheme) -> str:
-    """Return a scheme in a few words: ``2 x PE 315 on route R1``."""
-    return f"{scheme.count} x {scheme.pipe.name} on route {scheme.route.name}"
-
-
-def _best_text(plan: Plan, best: Scheme) -> str:
-    asked = plan.site.demand.discharge_m3s
-    asked_text = "" if asked is None else f" ({litres(asked)} asked)"
-    together = "" if best.count == 1 else " together"
-    standing = sum(scheme.verdict.grade != "unfit" for scheme in plan.schemes)
-    return (
-        f"Best of {counted(standing, 'scheme')} within all limits: {scheme_text(best)}, {fixed(best.route.length_m, 0)} m long, "
-        f"lift {fixed(best.appraisal.lift_m, 2)} m, up to {litres(best.total_discharge_m3s)}{together} at the lowest "
-        f"level{asked_text}. Verdict {best.verdict.grade}: {best.verdict.reason.rstrip('.')}."
     )
 
 
