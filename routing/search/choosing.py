@@ -131,7 +131,9 @@ def largest_discharge(job: Job, flow: Flow, *, tolerance: float = 1e-3) -> Found
             high, proven = discharge, outside
             ask_for_better = False
             continue
-        own = flow.carried_by(path)
+        # The search itself let the path through at this discharge: rounding in the figure may not take that back,
+        # or the bracket would never close.
+        own = max(flow.carried_by(path), discharge)
         if own > low:
             best, low = path, own
         at_length = flow.carried_at_length(path.length_m)
@@ -173,6 +175,6 @@ def least_raise(job: Job, limitation: Limitation, *, tolerance_m: float = 0.002)
             low, proven = lift, outside
             ask_for_better = False
         else:
-            best, high = path, min(high, _raise_of(path, limitation))
+            best, high = path, min(lift, _raise_of(path, limitation))  # no more than it was let through at
             ask_for_better = not ask_for_better
     return Found(best, low, high, proven, searches)
