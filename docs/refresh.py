@@ -41,8 +41,16 @@ def first_rows(lines: list[str], rows: int) -> list[str]:
 
 def paragraph(lines: list[str], start: str) -> list[str]:
     """Return the lines from one that begins with `start` to the next empty one."""
-    first = next(k for k, line in enumerate(lines) if line.startswith(start))
+    first = next((k for k, line in enumerate(lines) if line.startswith(start)), None)
+    if first is None:
+        raise SystemExit(f"no line begins with {start!r} in:\n" + "\n".join(lines))
     return lines[first : lines.index("", first)]
+
+
+def first_item(lines: list[str]) -> list[str]:
+    """Return the head of a list and its first item."""
+    second = [k for k, line in enumerate(lines) if line.startswith("- ")][1:2]
+    return lines[: second[0]] if second else lines
 
 
 def excerpts() -> dict[str, list[str]]:
@@ -60,7 +68,7 @@ def excerpts() -> dict[str, list[str]]:
         "look": facts,
         "schemes": first_rows(plan, 3),
         "best": paragraph(plan, "Scheme "),
-        "no-route": [*paragraph(none, "No route works"), "...", *paragraph(none, "What would help")],
+        "no-route": [*paragraph(none, "No route works"), "...", *first_item(paragraph(none, "No route for")), "..."],
     }
 
 

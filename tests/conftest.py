@@ -44,7 +44,7 @@ def run_program(arguments: Sequence[str | Path], cwd: Path, **environment: str) 
         env=os.environ | environment,
         capture_output=True,
         text=True,
-        timeout=300,
+        timeout=120,
         check=False,
     )
 

@@ -152,7 +152,7 @@ def test_the_readme_code_runs(demo):
         cwd=demo.parents[2],
         capture_output=True,
         text=True,
-        timeout=300,
+        timeout=120,
         check=False,
     )
     assert done.returncode == 0, done.stderr
