@@ -36,6 +36,7 @@ BAD = [
     (Limits, "reserve_m", "reserve"),
     (Limits, "highest_lift_m", "highest lift"),
     (Limits, "least_submergence_m", "least submergence"),
+    (Limits, "collapse_safety", "safety against collapse"),
     (Limits, "gravity_ms2", "gravity"),
 ]
 

@@ -66,7 +66,12 @@ def test_no_head_no_flow():
 def test_fixed_factor_is_closed_form():
     pipe = conduit(0.1, factor=0.02)
     assert pipe.largest_velocity_ms(3.0, 1.0, 10.0) == pytest.approx(math.sqrt(2 * 9.81))
+
+
+def test_where_nothing_resists_the_velocity_has_no_bound():
     assert conduit(0.1, factor=0.0).largest_velocity_ms(1.0, 0.0, 10.0) == math.inf
+    assert conduit(0.1, 1e-4).largest_velocity_ms(1.0, 0.0, 0.0) == math.inf
+    assert conduit(0.1, 1e-4).largest_velocity_ms(0.0, 0.0, 0.0) == 0.0
 
 
 def test_many_points_equal_the_least_of_single_ones():
