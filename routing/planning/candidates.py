@@ -15,6 +15,8 @@ from routing.search import Found, Limitation, PathEdges, largest_discharge, leas
 # Lengths on the graph are a little shorter than the sampled long section; a few rounds settle that.
 _ROUNDS = 5
 _SLACK_M = 1e-6
+#: Deepest trench that the site file takes (search.bed_offset_m).
+DEEPEST_TRENCH_M = 10.0
 
 
 @dataclass(frozen=True, slots=True)
@@ -71,7 +73,21 @@ def _words(pipe: Pipe, duty: float | None) -> str:
     return f"{pipe.name}" if duty is None else f"{pipe.name} at {duty * 1e3:.1f} l/s in each"
 
 
-def _shortfall(pipe: Pipe, duty: float | None, raised: Found, reserve_m: float) -> Shortfall:
+def _ways(need_m: float, limitation: Limitation, reserve_m: float) -> str:
+    """Say what would lift the ceiling by as much as is needed: only what a site file may set."""
+    if need_m > DEEPEST_TRENCH_M:
+        return "What would help: another outlet or intake, with lower ground between; no trench or level makes up this"
+    ways = f"a trench {need_m:.2f} m deep where the ground is too high, or a lowest level {need_m:.2f} m higher"
+    capped = limitation.ceiling_level_m - limitation.cap_level_m  # how far the highest lift lies under the suction
+    if capped > 0.0:
+        way, room_m = "a highest lift (limits.highest_lift_m) {:.2f} m higher", capped
+    else:
+        way, room_m = "a reserve {:.2f} m smaller", reserve_m
+    third = f", or {way.format(need_m)}" if need_m <= room_m else ""
+    return f"What would make a route: {ways}{third}"
+
+
+def _shortfall(pipe: Pipe, duty: float | None, raised: Found, limitation: Limitation, reserve_m: float) -> Shortfall:
     """Say what would make a route that keeps the suction limit."""
     if raised.path is None:
         text = f"{_words(pipe, duty)}: no ground that holds data joins intake and outlet within reach of the fall."
@@ -79,10 +95,11 @@ def _shortfall(pipe: Pipe, duty: float | None, raised: Found, reserve_m: float) 
     need = raised.high
     if need <= 0.0:  # the search's own rule is met; the sampled long section misses by a hair
         need = 0.01
-    ways = f"a trench {need:.2f} m deep where the ground is too high, or a lowest level {need:.2f} m higher"
-    if need <= reserve_m:
-        ways += f", or a reserve {need:.2f} m smaller"
-    text = f"{_words(pipe, duty)}: the ground is too high for the suction limit. What would make a route: {ways}."
+    capped = limitation.cap_level_m < limitation.ceiling_level_m
+    limit = "the highest lift allowed" if capped else "the suction limit"
+    text = (
+        f"{_words(pipe, duty)}: the ground is {need:.2f} m too high for {limit}. {_ways(need, limitation, reserve_m)}."
+    )
     return Shortfall(pipe.name, duty, "suction", need, text)
 
 
@@ -107,7 +124,7 @@ def _least_bad(bench: Bench, pipe: Pipe, best: Found, count: int, duty: float | 
     if raised.path is not None:
         figures = replace(best, proven_outside=raised.proven_outside)
         candidate = _candidate(bench, pipe, raised.path, figures, count, duty)
-        return Offer((candidate,), _shortfall(pipe, duty, raised, reserve), raised.proven_outside)
+        return Offer((candidate,), _shortfall(pipe, duty, raised, limitation, reserve), raised.proven_outside)
     if duty is not None:  # more than the fall drives at any length: look at still water instead
         still = best if best.path is not None else least_raise(bench.job, bench.limit_at(pipe, 0.0))
         if still.path is not None:
@@ -116,9 +133,10 @@ def _least_bad(bench: Bench, pipe: Pipe, best: Found, count: int, duty: float | 
             candidate = _candidate(bench, pipe, still.path, figures, count, duty)
             shortfall = _too_weak(pipe, duty, most)
             if best.path is None:
-                shortfall = replace(_shortfall(pipe, duty, still, reserve), text=_both(pipe, duty, still, most))
+                shortfall = _shortfall(pipe, duty, still, limitation, reserve)
+                shortfall = replace(shortfall, text=_both(pipe, duty, still, most))
             return Offer((candidate,), shortfall, still.proven_outside)
-    return Offer((), _shortfall(pipe, duty, raised, reserve), raised.proven_outside)
+    return Offer((), _shortfall(pipe, duty, raised, limitation, reserve), raised.proven_outside)
 
 
 def _both(pipe: Pipe, duty: float, still: Found, most: float) -> str:

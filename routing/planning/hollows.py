@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import numpy as np
 
+from routing.planning.edges import outer_edge
 from routing.planning.scenes import Scene
 from routing.records import Cell, Setting
 from routing.search import lowest_crest
@@ -21,11 +22,11 @@ def _rounded(volume_m3: float) -> str:
 def hollow_note(scene: Scene, setting: Setting) -> tuple[str, ...]:
     """Say how a hollow round the outlet fills, or return nothing where the ground drains on.
 
-    Water drains on where it can reach the border of the window by ground that rises at most a little above the
-    outlet.
+    Water drains on where it can reach the border of the window, or the edge of the ground that holds data, by ground
+    that rises at most a little above the outlet.
     """
     grid = scene.grid
-    goal = np.zeros(grid.shape, dtype=np.bool_)
+    goal = outer_edge(scene.terrain)
     goal[[0, -1], :] = goal[:, [0, -1]] = True
     outlet = np.zeros(grid.shape, dtype=np.bool_)
     outlet[scene.outlet_cell] = True

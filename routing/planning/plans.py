@@ -59,7 +59,7 @@ def look(site: Site, progress: Progress | None = None) -> Outlook:
     report = reporter(progress)
     with open_dem(site.terrain, site.lines, site.file) as dem:
         ends = place_ends(site, dem)
-        scene = survey(site, dem, ends, first_window(dem, ends), report)
+        scene = survey(site, dem, ends, first_window(site, dem, ends), report)
         setting = resolve(site, scene)
     terrain = scene.terrain
     levels = terrain.elevation_m[terrain.valid]
@@ -105,7 +105,7 @@ def _surveyed(site: Site, report: Reporter) -> _Survey:
     """Search windows of growing size until every answer is proven for the whole DEM, or no more can be read."""
     with open_dem(site.terrain, site.lines, site.file) as dem:
         ends = place_ends(site, dem)
-        window = first_window(dem, ends)
+        window = first_window(site, dem, ends)
         while True:
             scene = survey(site, dem, ends, window, report)
             found = _search(site, scene, report)

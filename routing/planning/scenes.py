@@ -10,16 +10,17 @@ from typing import Literal
 import numpy as np
 
 from routing.errors import InputError, Problem, SiteError
+from routing.planning.edges import gap_runs_out, outer_edge
+from routing.planning.ends import check_outlet, check_wet
 from routing.planning.reports import Reporter
 from routing.planning.troubles import site_problem
-from routing.records import BoolArray, Cell, GridWindow, PlacedPoint, Saddle, Site, Terrain, WaterBody
+from routing.records import Cell, GridWindow, PlacedPoint, Saddle, Site, Terrain, WaterBody
 from routing.search import Crest, Grid, lowest_crest, prepare_grid
 from routing.terrain import (
     Dem,
     FlatWater,
     LayerAsk,
     cell_at,
-    dry_cell,
     flat_water,
     place_point,
     water_body,
@@ -82,12 +83,35 @@ def place_ends(site: Site, dem: Dem) -> Ends:
     return Ends(*placed)
 
 
-def first_window(dem: Dem, ends: Ends) -> GridWindow:
-    """Return the window to begin with: both ends with a margin of half their distance."""
+def first_window(site: Site, dem: Dem, ends: Ends) -> GridWindow:
+    """Return the window to begin with: both ends with a margin of half their distance, or less where that is too much.
+
+    Raises
+    ------
+    SiteError
+        If even the least margin makes a window larger than the user's limit.
+    """
     points = [(point.x, point.y) for point in (ends.intake, ends.outlet)]
     rows, cols = np.array([dem.cell_of(*point) for point in points]).T
-    apart = max(int(np.ptp(rows)), int(np.ptp(cols)))
-    return dem.window_around(points, max(_LEAST_MARGIN_CELLS, apart // 2))
+    margin = max(_LEAST_MARGIN_CELLS, max(int(np.ptp(rows)), int(np.ptp(cols))) // 2)
+    most = site.search.largest_window_cells
+    while True:
+        window = dem.window_around(points, margin)
+        if window.rows * window.cols <= most:
+            return window
+        if margin == _LEAST_MARGIN_CELLS:
+            break
+        margin = max(_LEAST_MARGIN_CELLS, margin // 2)
+    raise SiteError(
+        site_problem(
+            site,
+            "search.largest_window_cells",
+            "Intake and outlet are too far apart for the part of the DEM that may be read at once.",
+            found=f"{window.rows} x {window.cols} cells around both, {window.rows * window.cols:,} in all",
+            allowed=f"at most {most:,} cells",
+            remedy="raise search.largest_window_cells (some 60 bytes of memory a cell), or take a DEM of larger cells",
+        )
+    )
 
 
 def grown_window(site: Site, dem: Dem, window: GridWindow) -> GridWindow | None:
@@ -125,50 +149,6 @@ def _present_level(site: Site, flat: FlatWater | None) -> float:
     )
 
 
-def _check_wet(site: Site, terrain: Terrain, cell: tuple[int, int], level_m: float) -> None:
-    if dry_cell(terrain, Cell(*cell), level_m):
-        ground = terrain.elevation_m[cell]
-        raise SiteError(
-            site_problem(
-                site,
-                site.intake.at.key or "intake",
-                "The intake is on dry ground.",
-                found=f"ground at {ground:.2f} m, water at {level_m:.2f} m",
-                allowed="a cell whose ground is at or below the water level",
-                remedy="move the intake into the water, or correct the water level",
-            )
-        )
-
-
-def _check_outlet(site: Site, scene: Scene) -> None:
-    row, col = scene.outlet_cell
-    if not scene.terrain.valid[row, col]:
-        raise SiteError(
-            site_problem(
-                site,
-                site.outlet.at.key or "outlet",
-                "The DEM has no data at the outlet.",
-                found="nodata",
-                allowed="a cell with a ground level",
-                remedy="move the outlet onto ground that the DEM shows",
-            )
-        )
-    crest = scene.crest
-    if scene.body.cells[row, col] or (crest is not None and crest.level_m <= scene.body.level_m):
-        place = "" if crest is None else f"; the highest ground on the lowest way between them is {crest.level_m:.2f} m"
-        at = "" if crest is None else f" at x {crest.x:.1f}, y {crest.y:.1f}"
-        raise SiteError(
-            site_problem(
-                site,
-                "water.present_level_m" if site.water.present_level_m is not None else site.outlet.at.key or "outlet",
-                "At the present level the water reaches the outlet: there is nothing to siphon over.",
-                found=f"water at {scene.body.level_m:.2f} m{place}{at}",
-                allowed="a level below the spill level, and an outlet outside the water",
-                remedy="correct the level if it is above that saddle, or move the outlet beyond the barrier",
-            )
-        )
-
-
 def _body(site: Site, terrain: Terrain, ends: Ends, cell: tuple[int, int], level_m: float) -> WaterBody:
     if site.water.polygon_file is None:
         return water_body(terrain, Cell(*cell), level_m)
@@ -186,26 +166,28 @@ def _saddle(terrain: Terrain, crest: Crest | None, towards: Literal["outlet", "e
     return Saddle(crest.level_m, float(x), float(y), towards, proven=not crest.border_met)
 
 
-def _edge_mask(window: GridWindow) -> BoolArray:
-    """Cells on the DEM's real edge."""
-    mask = np.zeros((window.rows, window.cols), dtype=np.bool_)
-    north, south, west, east = window.open_sides
-    mask[0, :] |= not north
-    mask[-1, :] |= not south
-    mask[:, 0] |= not west
-    mask[:, -1] |= not east
-    return mask
+def _read(site: Site, dem: Dem, ends: Ends, window: GridWindow) -> Terrain:
+    """Read a window, grown until a gap in the data at the intake lies inside: only then is it seen to be water."""
+    while True:
+        terrain = dem.read(window)
+        if not gap_runs_out(terrain, _cell(terrain, ends.intake)):
+            return terrain
+        larger = grown_window(site, dem, window)
+        if larger is None:
+            return terrain
+        window = larger
 
 
 def _look_at(site: Site, dem: Dem, ends: Ends, window: GridWindow, tick: Callable[[int], None]) -> Scene:
     """Read one window and find water body, lowest crest and spill in it."""
-    terrain = dem.read(window)
+    terrain = _read(site, dem, ends, window)
+    window = terrain.window
     intake, outlet = _cell(terrain, ends.intake), _cell(terrain, ends.outlet)
     flat = flat_water(terrain, Cell(*intake)) if site.terrain.water_shown == "surface" else None
     present = _present_level(site, flat)
     # Where the DEM shows a higher water than today's, the ground under it is unknown: its level stands for it.
     shown = max(present, flat.level_m) if flat is not None else present
-    _check_wet(site, terrain, intake, shown)
+    check_wet(site, terrain, intake, shown)
     body = _body(site, terrain, ends, intake, shown)
     terrain = with_voids_as_water(terrain, body)
     grid = prepare_grid(
@@ -219,7 +201,7 @@ def _look_at(site: Site, dem: Dem, ends: Ends, window: GridWindow, tick: Callabl
     goal[outlet] = True
     border = window.open_border()
     to_outlet = _saddle(terrain, lowest_crest(grid, body.cells, goal, open_border=border, tick=tick), "outlet")
-    edge = _edge_mask(window)
+    edge = outer_edge(terrain)
     to_edge = None
     if edge.any() and not body.touches_edge:
         to_edge = _saddle(terrain, lowest_crest(grid, body.cells, edge, open_border=border, tick=tick), "edge")
@@ -281,9 +263,9 @@ def survey(site: Site, dem: Dem, ends: Ends, window: GridWindow, reporter: Repor
         with ExitStack() as stack:
             tick = stack.enter_context(reporter.stage("ground and water body", 2 * window.rows * window.cols))
             scene = _look_at(site, dem, ends, window, tick)
-        larger = None if scene.proven else grown_window(site, dem, window)
+        larger = None if scene.proven else grown_window(site, dem, scene.terrain.window)
         if larger is None:
             break
         window = larger
-    _check_outlet(site, scene)
+    check_outlet(site, scene.terrain, scene.grid, scene.body, scene.crest, (scene.intake_cell, scene.outlet_cell))
     return replace(scene, warnings=_warnings(site, scene))

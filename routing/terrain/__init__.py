@@ -9,7 +9,13 @@ from routing.terrain.placing import place_point
 from routing.terrain.reading import Dem, inspect, open_dem
 from routing.terrain.sampling import SampleState, cell_at, rowcol_of, sample, sample_rowcol, xy_of
 from routing.terrain.sections import ground_along, long_section
-from routing.terrain.shores import cells_area_m2, share_above_level, shoreline_of, water_body_from_polygon
+from routing.terrain.shores import (
+    cells_area_m2,
+    level_slack_m,
+    share_above_level,
+    shoreline_of,
+    water_body_from_polygon,
+)
 from routing.terrain.vectors import LayerAsk, read_geometries
 from routing.terrain.water import dry_cell, water_body, water_cells, with_voids_as_water
 
@@ -24,6 +30,7 @@ __all__ = [
     "flat_water",
     "ground_along",
     "inspect",
+    "level_slack_m",
     "local_utm",
     "long_section",
     "nearest_valid",
