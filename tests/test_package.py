@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import ast
+import re
 import subprocess
 import sys
 import tomllib
@@ -100,3 +102,25 @@ def test_folders_of_tests_mirror_the_rooms():
     rooms = {path.name for path in (ROOT / "routing").iterdir() if path.is_dir()}
     folders = {path.name for path in (ROOT / "tests").iterdir() if path.is_dir()}
     assert folders - {"published", "benchmarks", "data", "twins", "__pycache__"} <= rooms
+
+
+def imported_by_tests():
+    """Return the third parties that the tests import, by the first part of their names."""
+    found = set()
+    for path in (ROOT / "tests").rglob("*.py"):
+        for node in ast.walk(ast.parse(path.read_text(encoding="utf-8"))):
+            if isinstance(node, ast.Import):
+                found |= {alias.name.split(".")[0] for alias in node.names}
+            elif isinstance(node, ast.ImportFrom) and node.module and not node.level:
+                found.add(node.module.split(".")[0])
+    return found - set(sys.stdlib_module_names) - {"routing", "twins"}
+
+
+def test_what_the_tests_import_is_in_the_test_extra():
+    """A distribution is found by the import name that it gives; pandas and affine come with geopandas and rasterio."""
+    project = PYPROJECT["project"]
+    wanted = [*project["dependencies"], *project["optional-dependencies"]["test"]]
+    declared = {re.split(r"[\[><=]", requirement)[0].lower() for requirement in wanted} | {"pandas", "affine"}
+    gives = metadata.packages_distributions()
+    missing = {name for name in imported_by_tests() if not {d.lower() for d in gives.get(name, [])} & declared}
+    assert missing == set()
