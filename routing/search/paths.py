@@ -30,7 +30,7 @@ class PathEdges:
     at_length_m, at_level_m : (m,) arrays
         What the ceiling must clear: ground levels and the lengths that they count at. By the far-end rule, the
         start and then the highest ground of each edge at the length of its far end; by the rule along the edge, the
-        ground at 24 places of each.
+        ground at 24 places of each and at its highest.
     """
 
     cells: NDArray[np.intp]
@@ -65,6 +65,19 @@ def _ground_at(grid: Grid, row: FloatArray, col: FloatArray) -> FloatArray:
     return ground
 
 
+def _peak_share(level_at: FloatArray) -> FloatArray:
+    """Share of each edge at which its ground is highest, from the parabola through the three samples there."""
+    best = np.argmax(level_at, axis=1)
+    middle = np.clip(best, 1, _SHARES.size - 2)
+    edges = np.arange(len(level_at))
+    left, peak, right = (level_at[edges, middle + side] for side in (-1, 0, 1))
+    bend = left - 2.0 * peak + right
+    inside = (best == middle) & (bend < 0.0)
+    offset = np.where(inside, 0.5 * (left - right) / np.where(inside, bend, 1.0), 0.0)
+    share: FloatArray = np.where(inside, _SHARES[middle] + np.clip(offset, -0.5, 0.5) / 24.0, _SHARES[best])
+    return share
+
+
 def path_edges(grid: Grid, cells: NDArray[np.intp], limitation: Limitation, start_length_m: float = 0.0) -> PathEdges:
     """Work out what the search judges of a path, by the rules of a limitation.
 
@@ -81,8 +94,10 @@ def path_edges(grid: Grid, cells: NDArray[np.intp], limitation: Limitation, star
     if limitation.rule == "bilinear" and limitation.along:
         row = (cells[:-1, 0:1] + np.diff(cells[:, 0:1], axis=0) * _SHARES).ravel()
         col = (cells[:-1, 1:2] + np.diff(cells[:, 1:2], axis=0) * _SHARES).ravel()
-        at_length = (far[:-1, None] + edge[:, None] * _SHARES).ravel()
-        at_level = _ground_at(grid, row, col)
+        level_at = _ground_at(grid, row, col).reshape(-1, _SHARES.size)
+        share, exact = _peak_share(level_at), kernel.path_highs(grid.ground, grid.moves, True, flat[:-1], taken)  # noqa: FBT003
+        at_length = np.append((far[:-1, None] + edge[:, None] * _SHARES).ravel(), far[:-1] + edge * share)
+        at_level = np.append(level_at.ravel(), exact)
     else:
         at_length = far[1:]
         at_level = kernel.path_highs(grid.ground, grid.moves, limitation.rule == "bilinear", flat[:-1], taken)
