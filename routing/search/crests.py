@@ -30,7 +30,7 @@ class Crest:
     goal
         The goal cell that is reached first.
     border_met
-        Whether the flooding met an open border cell before the goal: a lower way might then exist outside.
+        Whether the flooding met an open border cell at a lower level: a lower way might then exist outside.
     """
 
     level_m: float
@@ -165,6 +165,8 @@ def lowest_crest(
     if met is None:
         return None
     level, row, col = _highest_on_path(basin, met)
-    taken = (basin.flags & flooding.TAKEN) != 0
-    border_met = bool(np.any(taken & ((basin.flags & flooding.OPEN_BORDER) != 0)))
+    # A way that leaves over a border cell rises to that cell's own crest at least: only lower ones leave doubt. Beyond
+    # the crest every cell of the valley has the crest's level, and many a border cell is met there before the goal.
+    at_border = (basin.flags & flooding.OPEN_BORDER) != 0
+    border_met = bool(np.any(at_border & ((basin.flags & flooding.TAKEN) != 0) & (basin.crest < basin.crest[met])))
     return Crest(level, row, col, (met // basin.cols, met % basin.cols), border_met)

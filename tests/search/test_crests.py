@@ -67,6 +67,16 @@ def test_open_border_met_before_the_goal_is_told():
     assert lowest_crest(grid, sources, goal, open_border=border).border_met
 
 
+def test_a_border_met_only_beyond_the_crest_leaves_no_doubt():
+    """The valley beyond the crest runs to the border, all of it at the crest's level: no way out there is lower."""
+    ground = np.array([[5.0, 5.0, 5.0, 5.0, 5.0], [5.0, 1.0, 3.0, 0.0, 0.0], [5.0, 5.0, 5.0, 0.0, 0.0]])
+    border = np.zeros(ground.shape, bool)
+    border[-1] = True
+    found = lowest_crest(prepare_grid(ground, 1.0, 1.0), *masks(ground.shape, (1, 1), (1, 4)), open_border=border)
+    assert found.level_m == 3.0
+    assert not found.border_met
+
+
 def test_slices_and_heap_growth_change_nothing(monkeypatch):
     ground = np.random.default_rng(4).uniform(0, 9, (60, 60))
     grid = prepare_grid(ground, 1.0, 1.0)
