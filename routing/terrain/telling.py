@@ -36,6 +36,7 @@ class Teller:
             As in ``Problem``.
         """
         in_site = self.site_file is not None
+        table = key.split(".", maxsplit=1)[0]  # where the key would stand if it is not there
         return TerrainError(
             Problem(
                 what,
@@ -44,6 +45,6 @@ class Teller:
                 remedy=remedy,
                 file=str(self.site_file if in_site else self.dem_file),
                 key=key if in_site else None,
-                line=self.lines.get(key) if in_site else None,
+                line=self.lines.get(key, self.lines.get(table)) if in_site else None,
             )
         )
