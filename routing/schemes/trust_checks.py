@@ -24,7 +24,9 @@ def lift_share(matter: Matter) -> Check:
     share = lift / matter.appraisal.barometric_head_m
     grade: Grade = "caution" if share > HIGH_LIFT_SHARE else "fit"
     figure, limit = apart(share, HIGH_LIFT_SHARE, 2)
-    if lift > 0.0:
+    if abs(lift) <= ROUNDING_M:
+        reason = "the crest is level with the lowest level: no lift"
+    elif lift > 0.0:
         reason = f"the lift of {amount(lift, 2)} m is {figure} of the barometric head; up to {limit} is workable"
     else:
         reason = f"the crest lies {amount(lift, 2)} m below the lowest level: no lift"
