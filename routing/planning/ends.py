@@ -27,6 +27,8 @@ def check_wet(site: Site, terrain: Terrain, cell: CellLike, level_m: float) -> N
         If it lies on dry ground, or where the DEM has a hole that is not all water.
     """
     key = site.intake.at.key or "intake"
+    if site.water.polygon_file is not None:
+        return  # the polygon says where water is, whatever a coarse or noisy DEM shows of its surface
     if dry_cell(terrain, Cell(*cell), level_m):
         raise SiteError(
             site_problem(
@@ -35,10 +37,11 @@ def check_wet(site: Site, terrain: Terrain, cell: CellLike, level_m: float) -> N
                 "The intake is on dry ground.",
                 found=f"ground at {terrain.elevation_m[cell]:.2f} m, water at {level_m:.2f} m",
                 allowed="a cell whose ground is at or below the water level",
-                remedy="move the intake into the water, or correct the water level",
+                remedy="move the intake into the water, correct the water level, or give water.polygon_file where the "
+                "DEM is too rough to show the water",
             )
         )
-    if terrain.valid[cell] or site.water.polygon_file is not None or _in_enclosed_void(terrain, cell, level_m):
+    if terrain.valid[cell] or _in_enclosed_void(terrain, cell, level_m):
         return
     raise SiteError(
         site_problem(
@@ -121,6 +124,15 @@ def _under_water(site: Site, terrain: Terrain, body: WaterBody, outlet: CellLike
     """Say why nothing parts the water from the outlet."""
     outlet_key = site.outlet.at.key or "outlet"
     ground, water = float(terrain.elevation_m[outlet]), f"water at {body.level_m:.2f} m"
+    if saddle is not None and saddle.level_m > body.level_m:  # only a polygon can reach over it
+        return site_problem(
+            site,
+            "water.polygon_file",
+            "The polygon of the water reaches over the barrier to the outlet.",
+            found=f"{water}, ground up to {saddle.level_m:.2f} m between intake and outlet",
+            allowed="a polygon that ends at the shore",
+            remedy="correct the polygon, or leave it out: the water is then found from its level",
+        )
     if saddle is not None:
         x, y = xy_of(terrain, saddle.row, saddle.col)
         digits = 6 if abs(terrain.transform[0]) < 0.1 else 1

@@ -21,8 +21,10 @@ from routing.terrain import (
     FlatWater,
     LayerAsk,
     cell_at,
+    dry_cell,
     flat_water,
     place_point,
+    share_above_level,
     water_body,
     water_body_from_polygon,
     with_voids_as_water,
@@ -32,6 +34,8 @@ from routing.terrain import (
 _LEAST_MARGIN_CELLS = 48
 # A window that must grow doubles its sides: few re-reads, and never four times more than is needed.
 _GROWTH = 2.0
+# A drawn shoreline and the cells of a DEM never agree at the rim; more than this is no rim.
+_MUCH_ABOVE = 0.1
 
 
 @dataclass(frozen=True, slots=True)
@@ -235,6 +239,18 @@ def _warnings(site: Site, scene: Scene) -> tuple[str, ...]:
         notes.append(
             "The edge of the DEM cuts the water body: its area is a lower bound and its spill level is unknown. If it "
             "should not reach so far, the present level may be above a saddle."
+        )
+    if dry_cell(scene.terrain, Cell(*scene.intake_cell), scene.body.level_m):  # only a polygon allows that
+        ground = float(scene.terrain.elevation_m[scene.intake_cell])
+        notes.append(
+            f"The DEM shows ground at {ground:.2f} m at the intake, above the water level of {scene.body.level_m:.2f} m: "
+            "check the place, the level and the datum of the DEM."
+        )
+    above = share_above_level(scene.terrain, scene.body)
+    if above > _MUCH_ABOVE:
+        notes.append(
+            f"{100.0 * above:.0f} % of the water's polygon lies on ground above the water level of "
+            f"{scene.body.level_m:.2f} m: check the polygon, the level and the datum of the DEM."
         )
     if scene.flat is not None and scene.flat.level_m > scene.present_m + 0.01:
         notes.append(

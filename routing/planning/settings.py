@@ -72,10 +72,13 @@ def _outlet_m(site: Site, scene: Scene) -> tuple[float, str]:
 
 
 def _mouth_m(site: Site, scene: Scene) -> tuple[float | None, tuple[str, ...]]:
+    ground = float(scene.terrain.elevation_m[scene.intake_cell])
     if site.intake.mouth_level_m is not None:
-        return site.intake.mouth_level_m, ()
+        mouth = site.intake.mouth_level_m
+        if site.terrain.water_shown == "bed" and mouth < ground:
+            return mouth, (f"The intake mouth, at {mouth:g} m, lies below the bed that the DEM shows: {ground:.2f} m.",)
+        return mouth, ()
     if site.terrain.water_shown == "bed":
-        ground = float(scene.terrain.elevation_m[scene.intake_cell])
         return ground, (f"The top of the intake mouth is taken to lie on the bed, at {ground:.2f} m.",)
     return None, ()
 

@@ -209,6 +209,51 @@ def test_a_polygon_that_misses_the_intake_is_refused(make_job, ground, tmp_path)
     assert "holds the intake" in problem.what
 
 
+@pytest.fixture
+def shore(tmp_path):
+    """Write a box, in cells from the north-west corner, as the water's polygon."""
+
+    def write(first_row, first_col, last_row, last_col):
+        west, south = WEST + first_col * CELL, NORTH - (last_row + 1) * CELL
+        area = box(west, south, WEST + (last_col + 1) * CELL, NORTH - first_row * CELL)
+        geopandas.GeoSeries([area], crs="EPSG:32631").to_file(tmp_path / "shore.gpkg")
+        return {"polygon_file": "shore.gpkg"}
+
+    return write
+
+
+@pytest.mark.parametrize("last_col", [35, 70])
+def test_a_polygon_over_the_barrier_is_refused(make_job, ground, shore, last_col):
+    problem = refusal(make_job(ground.reservoir(), water=shore(5, 2, 34, last_col)))
+    assert problem.key == "water.polygon_file"
+    assert "reaches over the barrier" in problem.what
+    assert "103.00 m" in problem.found
+
+
+def test_a_polygon_that_is_much_on_dry_land_is_told(make_job, ground, shore, clean):
+    plan = make_job(ground.reservoir(), water=shore(0, 0, 39, 27)).plan()
+    same(only(plan), clean)
+    share = round(100 * (1 - 30 * 26 / (40 * 28)))
+    assert any(text.startswith(f"{share} % of the water's polygon lies on ground above") for text in plan.warnings)
+
+
+def test_rough_water_is_read_with_a_polygon(make_job, ground, shore, rng, clean):
+    """A radar DEM: the lake is not flat, and the intake's own cell is higher than the water."""
+    values = ground.reservoir() + np.where(ground.reservoir() == 100.0, rng.normal(0.0, 0.2, (40, 80)), 0.0)
+    values[20, 10] = 100.4
+    problem = refusal(make_job(values))
+    assert problem.key == "intake.x"
+    assert "water.polygon_file" in problem.remedy
+    plan = make_job(values, water=shore(5, 2, 34, 27)).plan()
+    same(only(plan), clean, rel=1e-3)
+    assert any("ground at 100.40 m at the intake" in text for text in plan.warnings)
+
+
+def test_a_mouth_below_the_bed_is_told(make_job, ground):
+    job = make_job(ground.reservoir(water=97.0), terrain={"water_shown": "bed"})
+    assert "The intake mouth, at 95 m, lies below the bed that the DEM shows: 97.00 m." in job.look().assumptions
+
+
 def test_a_collar_of_nodata_is_an_edge_and_no_hollow(make_job, ground, clean):
     """DEMs are often cut to a catchment: the file goes on, the ground does not."""
     values = np.full((80, 120), -9999.0)
@@ -545,6 +590,48 @@ def test_a_mirrored_job_has_the_same_length(make_job, ground, rng):
     two = only(make_job(values[:, ::-1], ends=((12, 69), (28, 14))).plan())
     assert two.route.length_m == pytest.approx(one.route.length_m, rel=1e-9)
     assert two.appraisal.discharge_m3s == pytest.approx(one.appraisal.discharge_m3s, rel=1e-9)
+
+
+@pytest.mark.parametrize(
+    "search", [{"neighbours": 8}, {"neighbours": 32}, {"ground_rule": "cells"}, {"tolerance": 1e-6}]
+)
+def test_ways_to_search_agree_where_the_best_route_is_straight(make_job, ground, clean, search):
+    same(only(make_job(ground.reservoir(), search=search).plan()), clean)
+
+
+@pytest.mark.parametrize(
+    ("transform", "turned", "y"),
+    [
+        (Affine(CELL, 0, WEST, 0, CELL, NORTH - 40 * CELL), np.s_[::-1], NORTH - 205.0),
+        (Affine(-CELL, 0, WEST + 80 * CELL, 0, -CELL, NORTH), np.s_[:, ::-1], NORTH - 205.0),
+        (Affine(CELL, 0, WEST, 0, -3.0, NORTH), np.s_[:], NORTH - 61.5),
+    ],
+    ids=["south up", "east to west", "oblong cells"],
+)
+def test_grids_stored_the_other_way_round(make_job, ground, clean, transform, turned, y):
+    places = {"intake": {"y": y}, "outlet": {"y": y}}
+    same(only(make_job(ground.reservoir()[turned], dem={"transform": transform}, **places).plan()), clean)
+
+
+def test_a_datum_offset_moves_the_dem(make_job, ground, clean):
+    same(only(make_job(ground.reservoir() - 50.0, terrain={"datum_offset_m": 50.0}).plan()), clean)
+
+
+def test_a_compound_crs_says_unit_and_datum(make_job, ground):
+    """EGM96 heights in metres: no unit and no altitude have to be told."""
+    job = make_job(
+        ground.reservoir(), dem={"crs": "EPSG:32631+5773"}, terrain={"vertical_unit": None}, air={"pressure_pa": None}
+    )
+    assert only(job.plan()).verdict.grade != "unfit"
+
+
+@pytest.mark.parametrize("diameter", [10.0, 4000.0])
+def test_the_smallest_and_the_largest_pipe(make_job, ground, diameter):
+    pipe = {"name": "odd", "outside_diameter_mm": diameter, "wall_mm": diameter / 20, "roughness_mm": 0.01}
+    plan = make_job(ground.reservoir(), pipes=[pipe]).plan()
+    lift = 4.0 + 0.95 * diameter / 1000.0
+    assert only(plan).appraisal.lift_m == pytest.approx(lift)
+    assert plan.feasible == (lift < (101325.0 - 1228.0) / (999.7 * 9.81) - 2.5)
 
 
 # ---------------------------------------------------------------- windows
