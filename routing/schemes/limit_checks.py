@@ -39,18 +39,21 @@ def suction(matter: Matter) -> Check:
     left = matter.appraisal.reserve_left_m
     limits = matter.conditions.limits
     at = f"at chainage {matter.appraisal.duty.governing_chainage_m:.0f} m"
-    broken = left < -ROUNDING_M
+    broken, slim = left < -ROUNDING_M, left < SLIM_RESERVE_M
     size = amount(left, 2) if broken or left > 0.0 else "0.00"
+    if slim and not broken and left > 0.5 * SLIM_RESERVE_M:
+        size = apart(left, SLIM_RESERVE_M, 2)[0]
+    wanted = f" ({SLIM_RESERVE_M:g} m are wanted)" if slim and not broken else ""
     source = _RULE
     if _is_capped(matter):
         source = _USER
         relation = "above" if broken else "below"
-        reason = f"the crest lies {size} m {relation} the highest lift of {limits.highest_lift_m:g} m, {at}"
+        reason = f"the crest lies {size} m {relation} the highest lift of {limits.highest_lift_m:g} m{wanted}, {at}"
     elif broken:
         reason = f"the crown lies {size} m too high {at} to keep the reserve of {limits.reserve_m:g} m of water"
     else:
-        reason = f"{size} m of water are left above the reserve of {limits.reserve_m:g} m, least {at}"
-    grade = _by_limit(broken=broken, slim=left < SLIM_RESERVE_M)
+        reason = f"{size} m of water are left above the reserve of {limits.reserve_m:g} m{wanted}, least {at}"
+    grade = _by_limit(broken=broken, slim=slim)
     return Check("suction", "Suction at the crown", grade, left, 0.0, "m", left, reason, source)
 
 

@@ -21,7 +21,8 @@ def matter(job_of):
     [
         (2.0, "fit", "2.00 m of water are left above the reserve of 2.5 m, least at chainage 30 m"),
         (0.5, "fit", "0.50 m of water"),
-        (math.nextafter(0.5, DOWN), "caution", "0.50 m of water"),
+        (math.nextafter(0.5, DOWN), "caution", "(0.5 m are wanted)"),
+        (0.498, "caution", "0.498 m of water are left above the reserve of 2.5 m (0.5 m are wanted), least at"),
         (0.001, "caution", "under 0.01 m of water are left"),
         (0.0, "caution", "0.00 m of water are left"),
         (-0.9e-6, "caution", "0.00 m of water are left"),
@@ -40,7 +41,7 @@ def test_suction(matter, changed, left, grade, words):
     [
         (9.0, "fit", "m of water are left above the reserve"),  # the pressure leaves less than 3 m
         (6.6, "fit", "the crest lies 0.60 m below the highest lift of 6.6 m"),
-        (6.1, "caution", "the crest lies 0.10 m below the highest lift of 6.1 m, at chainage 30 m"),
+        (6.1, "caution", "the crest lies 0.10 m below the highest lift of 6.1 m (0.5 m are wanted), at chainage 30 m"),
         (5.5, "unfit", "the crest lies 0.50 m above the highest lift of 5.5 m"),
     ],
 )
