@@ -243,8 +243,8 @@ def _warnings(site: Site, scene: Scene) -> tuple[str, ...]:
     if dry_cell(scene.terrain, Cell(*scene.intake_cell), scene.body.level_m):  # only a polygon allows that
         ground = float(scene.terrain.elevation_m[scene.intake_cell])
         notes.append(
-            f"The DEM shows ground at {ground:.2f} m at the intake, above the water level of {scene.body.level_m:.2f} m: "
-            "check the place, the level and the datum of the DEM."
+            f"The DEM shows ground at {ground:.2f} m at the intake, above the water level of "
+            f"{scene.body.level_m:.2f} m: check the place, the level and the datum of the DEM."
         )
     above = share_above_level(scene.terrain, scene.body)
     if above > _MUCH_ABOVE:
