@@ -11,14 +11,18 @@ from collections.abc import Callable
 from dataclasses import dataclass, replace
 
 import numpy as np
+from numpy.typing import NDArray
 
 from routing.records import BoolArray
 from routing.search.grid import Grid
 from routing.search.paths import PathEdges, may_escape, path_edges
 from routing.search.reaching import CellLike, Limitation, Reach, Tick, search_grid
+from routing.search.widest import bound_by_cells, compact, spread
 
 # Below this share of what the fall alone would drive, a route counts as carrying nothing.
 _NO_FLOW = 1e-6
+# A bracket this narrow is closed sooner by probes than by cells.
+_COARSE = 0.01
 
 
 @dataclass(frozen=True, slots=True)
@@ -78,6 +82,26 @@ class Found:
     searches: int
 
 
+@dataclass(frozen=True, slots=True)
+class _Bracket:
+    """The best path so far, what it carries, what no path can exceed, and whether that holds outside the window."""
+
+    path: PathEdges | None
+    low: float
+    high: float
+    proven: bool
+    searches: int
+
+    def closed(self, tolerance: float) -> bool:
+        return self.high <= self.low * (1.0 + tolerance)
+
+    def with_path(self, path: PathEdges, low: float) -> _Bracket:
+        return replace(self, path=path, low=low) if low > self.low else self
+
+    def below(self, high: float, *, proven: bool) -> _Bracket:
+        return replace(self, high=high, proven=proven)
+
+
 def _probe(job: Job, limitation: Limitation) -> tuple[PathEdges | None, bool]:
     """Search once; return the shortest path and whether it is (or its absence is) proven outside the window."""
     limited = replace(limitation, goal=job.goal)
@@ -102,13 +126,46 @@ def shortest_path(job: Job, limitation: Limitation) -> Found:
     return Found(path, length, length, proven, 1)
 
 
+def _carried(job: Job, flow: Flow, way: NDArray[np.intp], limitation: Limitation) -> tuple[PathEdges, float]:
+    path = path_edges(job.grid, way, limitation)
+    return path, flow.carried_by(path)
+
+
+def _first_bracket(job: Job, flow: Flow) -> _Bracket:
+    """Search under the ceiling of still water, and where suction governs narrow the bracket down by cells."""
+    still = flow.limit_at(0.0)
+    forward = search_grid(job.grid, [job.source], still, tick=job.tick)
+    length = float(forward.length_m[job.goal])
+    proven = not may_escape(job.grid, forward, job.band, job.goal, length)
+    if not np.isfinite(length):
+        return _Bracket(None, 0.0, 0.0, proven, 1)
+    path, low = _carried(job, flow, forward.path_to(*job.goal), still)
+    bracket = _Bracket(path, low, max(low, flow.carried_at_length(length)), proven, 1)
+    if bracket.closed(_COARSE):
+        return bracket
+    forward = compact(forward)
+    backward = compact(search_grid(job.grid, [job.goal], replace(still, along=False), tick=job.tick))
+    bracket = replace(bracket, searches=2)
+    figures = spread(bracket.low, bracket.high)
+    bound = bound_by_cells(
+        job.grid, (job.source, job.goal), (forward, backward), [flow.limit_at(figure) for figure in figures], figures
+    )
+    if bound.way is not None:
+        bracket = bracket.with_path(*_carried(job, flow, bound.way, still))
+    if bound.high >= bracket.high:
+        return bracket
+    longest = flow.limit_at(bound.high).longest_m
+    return bracket.below(bound.high, proven=not may_escape(job.grid, forward, job.band, job.goal, longest))
+
+
 def largest_discharge(job: Job, flow: Flow, *, tolerance: float = 1e-3) -> Found:
     """Find a path that carries the largest discharge, within ``tolerance`` of the best of any path.
 
     The first search is under the ceiling of still water: a path for any discharge also keeps to that, so none
     is shorter than the one it finds, and the fall carries no more than it does at that length. Where that
-    path itself carries as much, energy governs and the search is over. Else probes just above the best known
-    path ("is there any better?") take turns with probes half way up.
+    path itself carries as much, energy governs and the search is over. Else the cells bound what any path carries
+    (see `bound_by_cells`), and probes just above the best known path ("is there any better?") take turns with probes
+    half way up.
 
     Returns
     -------
@@ -116,31 +173,30 @@ def largest_discharge(job: Job, flow: Flow, *, tolerance: float = 1e-3) -> Found
         ``low`` is what the path carries by the search's own rules, ``high`` what no path can exceed. Where even
         still water finds no path, ``path`` is ``None`` and both are 0.
     """
-    best, proven = _probe(job, flow.limit_at(0.0))
-    searches = 1
-    if best is None:
-        return Found(None, 0.0, 0.0, proven, searches)
-    low, high = flow.carried_by(best), flow.carried_at_length(best.length_m)
-    nothing = _NO_FLOW * high
-    ask_for_better = low > 0.0
-    while high > max(low * (1.0 + tolerance), nothing):
+    bracket = _first_bracket(job, flow)
+    nothing = _NO_FLOW * bracket.high
+    ask_for_better = bracket.low > 0.0
+    while not bracket.closed(tolerance) and bracket.high > nothing:
+        low, high = bracket.low, bracket.high
         discharge = low * (1.0 + tolerance) if ask_for_better else 0.5 * (low + high)
         path, outside = _probe(job, flow.limit_at(discharge))
-        searches += 1
+        bracket = replace(bracket, searches=bracket.searches + 1)
         if path is None:
-            high, proven = discharge, outside
+            bracket = bracket.below(discharge, proven=outside)
             ask_for_better = False
             continue
         # The search itself let the path through at this discharge: rounding in the figure may not take that back,
         # or the bracket would never close.
-        own = max(flow.carried_by(path), discharge)
-        if own > low:
-            best, low = path, own
+        bracket = bracket.with_path(path, max(flow.carried_by(path), discharge))
         at_length = flow.carried_at_length(path.length_m)
-        if at_length < high:
-            high, proven = at_length, outside
+        if at_length < bracket.high:
+            bracket = bracket.below(at_length, proven=outside)
         ask_for_better = not ask_for_better
-    return Found(best, low, max(low, high), proven, searches)
+    if bracket.path is not None and not bracket.proven:  # the ceiling itself may close the ways out of the window
+        path, outside = _probe(job, flow.limit_at(bracket.high * (1.0 + tolerance)))
+        proven = path is None and outside
+        bracket = replace(bracket, searches=bracket.searches + 1, proven=proven)
+    return Found(bracket.path, bracket.low, max(bracket.low, bracket.high), bracket.proven, bracket.searches)
 
 
 def _raise_of(path: PathEdges, limitation: Limitation) -> float:

@@ -1,4 +1,6 @@
-"""The compiled flooding: lowest possible highest ground on the way from a water body to a goal.
+"""The compiled floodings: the lowest possible crest, and the widest way by capacities of cells.
+
+The first finds the lowest possible highest ground on the way from a water body to a goal.
 
 The ground is the bilinear surface through the cell centres. Over it, a way along a grid line rises to the
 higher of its ends; between opposite corners of a patch it need not rise above the higher of the two, unless
@@ -26,6 +28,8 @@ DONE = 0
 SLICE_OVER = 1
 HEAP_SMALL = 2
 GOAL_MET = 3
+
+NO_RATING = 255
 
 WAITING, GOAL_CELL, COUNT = range(3)
 STATE_SIZE = 3
@@ -141,3 +145,70 @@ def flood(basin: Basin, heap: Heap, state: NDArray[np.int64], budget: int) -> in
                 basin.parent[to] = move
                 heap_push(heap, state, crest, to)
     return DONE
+
+
+@njit(cache=True)
+def rate_cells(
+    level: NDArray[np.float64],
+    before: NDArray[np.float32],
+    after: NDArray[np.float32],
+    steps: NDArray[np.float64],
+    rating: NDArray[np.uint8],
+) -> None:
+    """Give each cell the largest step of a table that it allows, or ``NO_RATING``.
+
+    ``steps`` is (n, 4): ceiling level, gradient, cap, longest length, falling from step to step. A cell allows a step
+    if its ground is under the ceiling at the length ``before`` it, and the way through it is not too long.
+    """
+    for cell in range(level.size):
+        low, high = -1, steps.shape[0] - 1  # the answer is in low..high
+        whole = before[cell] + after[cell]
+        while low < high:
+            middle = (low + high + 1) >> 1
+            top = min(steps[middle, 0] - steps[middle, 1] * before[cell], steps[middle, 2])
+            if level[cell] <= top and whole <= steps[middle, 3]:
+                low = middle
+            else:
+                high = middle - 1
+        rating[cell] = NO_RATING if low < 0 else low
+
+
+@njit(cache=True)
+def widest_way(
+    rating: NDArray[np.uint8], drow: NDArray[np.intp], dcol: NDArray[np.intp], cols: int, source: int, goal: int
+) -> tuple[int, int]:
+    """Find the way whose least rating is largest; return that rating and its narrowest cell (-1, -1 for none).
+
+    Cells without a rating are not entered. Cells wait in one list a rating and the
+    best list is drained first, so each cell is looked at once.
+    """
+    head = np.full(256, -1, dtype=np.int32)
+    after = np.empty(rating.size, dtype=np.int32)
+    neck = np.full(rating.size, -1, dtype=np.int32)
+    rows = rating.size // cols
+    if rating[source] == NO_RATING:
+        return -1, -1
+    at = int(rating[source])
+    head[at], after[source], neck[source] = source, -1, source
+    while at >= 0:
+        cell = head[at]
+        if cell < 0:
+            at -= 1
+            continue
+        head[at] = after[cell]
+        if cell == goal:
+            return at, neck[cell]
+        row = cell // cols
+        col = cell - row * cols
+        for move in range(drow.size):
+            row_to, col_to = row + drow[move], col + dcol[move]
+            if row_to < 0 or row_to >= rows or col_to < 0 or col_to >= cols:
+                continue
+            to = row_to * cols + col_to
+            if neck[to] >= 0 or rating[to] == NO_RATING:
+                continue
+            slot = min(at, int(rating[to]))
+            neck[to] = to if slot < at else neck[cell]
+            after[to] = head[slot]
+            head[slot] = to
+    return -1, -1
