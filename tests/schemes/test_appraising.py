@@ -194,3 +194,11 @@ def test_full_bore_that_would_part_the_column_lacks_metres(parting):
     # 33.9 - 35.0 ft absolute at 95.3 ft3/s.
     assert found.reserve_left_m == pytest.approx(-1.1 * FT, abs=0.1 * FT)
     assert found.discharge_m3s < 95.2 * FT**3
+
+
+@pytest.mark.parametrize(("share", "found"), [(0.52, (60.0,)), (0.48, ())])
+def test_a_dip_of_half_a_bore_parts_two_high_points(job_of, share, found):
+    job = job_of()
+    dip = share * job.pipe.bore_m
+    humps = (98.0, 104.8, 104.7 - dip, 104.7, 93.0)
+    assert replace(job, chainage_m=(0.0, 30.0, 45.0, 60.0, 115.0), crown_m=humps).appraise().high_points == found
