@@ -15,7 +15,7 @@ from routing.planning.ends import check_outlet, check_wet
 from routing.planning.reports import Reporter
 from routing.planning.troubles import site_problem
 from routing.records import Cell, GridWindow, PlacedPoint, Saddle, Site, Terrain, WaterBody
-from routing.search import Crest, Grid, lowest_crest, prepare_grid
+from routing.search import Crest, Grid, lowest_crest, moves_over_gaps, prepare_grid
 from routing.terrain import (
     Dem,
     FlatWater,
@@ -182,6 +182,20 @@ def _read(site: Site, dem: Dem, ends: Ends, window: GridWindow) -> Terrain:
         window = larger
 
 
+def _grid(site: Site, terrain: Terrain) -> Grid:
+    """Make the ground ready for the search; where only cells are looked at, long sections must still be possible."""
+    ask = site.search
+    gaps = ask.ground_rule == "cells" and not terrain.valid.all()
+    return prepare_grid(
+        terrain.elevation_m,
+        terrain.step_x_m,
+        terrain.step_y_m,
+        valid=terrain.valid,
+        blocked_moves=moves_over_gaps(terrain.valid, ask.neighbours) if gaps else None,
+        neighbours=ask.neighbours,
+    )
+
+
 def _look_at(site: Site, dem: Dem, ends: Ends, window: GridWindow, tick: Callable[[int], None]) -> Scene:
     """Read one window and find water body, lowest crest and spill in it."""
     terrain = _read(site, dem, ends, window)
@@ -194,13 +208,7 @@ def _look_at(site: Site, dem: Dem, ends: Ends, window: GridWindow, tick: Callabl
     check_wet(site, terrain, intake, shown)
     body = _body(site, terrain, ends, intake, shown)
     terrain = with_voids_as_water(terrain, body)
-    grid = prepare_grid(
-        terrain.elevation_m,
-        terrain.step_x_m,
-        terrain.step_y_m,
-        valid=terrain.valid,
-        neighbours=site.search.neighbours,
-    )
+    grid = _grid(site, terrain)
     goal = np.zeros(grid.shape, dtype=np.bool_)
     goal[outlet] = True
     border = window.open_border()

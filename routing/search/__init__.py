@@ -7,6 +7,7 @@ siphon; `lowest_crest` floods the bilinear ground.
 from routing.search.choosing import Flow, Found, Job, largest_discharge, least_raise, shortest_path
 from routing.search.compiling import cache_folder, kernels_ready
 from routing.search.crests import Crest, lowest_crest
+from routing.search.gaps import moves_over_gaps
 from routing.search.grid import Grid, free_ratio, prepare_grid
 from routing.search.moves import move_list
 from routing.search.paths import PathEdges, border_band, may_escape, path_edges
@@ -30,6 +31,7 @@ __all__ = [
     "lowest_crest",
     "may_escape",
     "move_list",
+    "moves_over_gaps",
     "path_edges",
     "prepare_grid",
     "reach",

@@ -94,6 +94,17 @@ def test_cells_without_data_off_the_route_change_nothing(make_job, ground, clean
         assert any("cells hold" in note and note.startswith("6 ") for note in plan.assumptions)
 
 
+@pytest.mark.parametrize("rule", ["bilinear", "cells"])
+def test_many_small_gaps_leave_a_long_section_to_be_drawn(make_job, ground, rng, rule):
+    """Single cells without data all over, as in sparse lidar: the route runs between them, by either rule."""
+    values = ground.reservoir()
+    values[rng.random(values.shape) < 0.08] = np.nan
+    values[20, [10, 60]] = 100.0, 90.0
+    scheme = only(make_job(values, search={"ground_rule": rule}).plan())
+    assert np.isfinite(scheme.route.ground_m).all()
+    assert scheme.route.crest_m == pytest.approx(103.0, abs=0.5)
+
+
 @pytest.mark.parametrize("kind", ["value", "mask", "nan"])
 def test_a_gap_in_the_ridge_is_gone_round(make_job, ground, clean, kind):
     values = ground.reservoir().astype(np.float32)
@@ -468,6 +479,14 @@ def test_a_trench_lowers_the_crown_by_its_depth(make_job, ground, hand):
     assert scheme.appraisal.lift_m == pytest.approx(103.0 + hand.crown_m - 2.0 - 99.0)
     energy = hand.energy_m3s(9.0, scheme.route.length_m)
     assert (scheme.appraisal.governs, scheme.appraisal.discharge_m3s) == ("energy", pytest.approx(energy, rel=1e-6))
+
+
+def test_a_demand_is_met_by_as_few_pipes_as_the_hand_says(make_job, ground, hand):
+    plan = make_job(ground.reservoir(), demand={"discharge_m3s": 0.4}).plan()
+    each = hand.suction_m3s(99.0, 103.0, ground.length(ground.reservoir()[20, 10:31]))
+    assert 0.4 / 3 < each < 0.4 / 2
+    assert [scheme.count for scheme in plan.schemes if scheme.verdict.grade != "unfit"] == [3, 4]
+    assert {scheme.appraisal.duty_m3s for scheme in plan.schemes} == {0.4 / 3, 0.4 / 4}
 
 
 def test_a_demand_that_no_pipe_can_carry(make_job, ground):
