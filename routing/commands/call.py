@@ -4,12 +4,17 @@ from __future__ import annotations
 
 import math
 import signal
+import sys
 import threading
 import time
 from collections.abc import Iterator
 from contextlib import contextmanager
 from dataclasses import dataclass, field
 from types import FrameType
+from typing import TYPE_CHECKING
+
+if TYPE_CHECKING:
+    from sys import UnraisableHookArgs
 
 #: Signals that mean "stop": Ctrl-C, and a polite request of the system's to end.
 _STOPS = (signal.SIGINT, signal.SIGTERM)
@@ -76,12 +81,21 @@ def listening_for_stops(stop: Stop) -> Iterator[None]:
         stop.asked, stop.raised_s = True, now_s
         raise KeyboardInterrupt
 
+    usual_hook = sys.unraisablehook
+
+    def hook(unraisable: UnraisableHookArgs) -> None:
+        # Python drops what is raised inside a callback from C (numba's compiler has such); the flag remains.
+        if not (stop.asked and isinstance(unraisable.exc_value, KeyboardInterrupt)):
+            usual_hook(unraisable)
+
     before = {name: signal.getsignal(name) for name in _STOPS}
     for name, handler in before.items():
         if handler is not signal.SIG_IGN:
             signal.signal(name, ask)
+    sys.unraisablehook = hook
     try:
         yield
     finally:
+        sys.unraisablehook = usual_hook
         for name, handler in before.items():
             signal.signal(name, handler)

@@ -33,10 +33,10 @@ def main(argv: Sequence[str] | None = None) -> int:
     with listening_for_stops(call.stop), library_warnings(shown=call.asks("-v", "--verbose")):
         try:
             return main_inner(call.arguments, call)
-        except OvercrestError as error:
-            return _tell(error, call)
         except KeyboardInterrupt:
-            return _tell(Interrupted("stopped as asked; nothing half-written is left behind"), call)
+            return _stopped(call)
+        except OvercrestError as error:
+            return _stopped(call) if call.stop.asked else _tell(error, call)
         except BrokenPipeError:
             # Only click's own help pages come this way (see streams.emit): their reader has seen enough.
             silence(sys.stdout)
@@ -44,7 +44,8 @@ def main(argv: Sequence[str] | None = None) -> int:
         except MemoryError as error:
             return _tell(_out_of_memory(error), call)
         except Exception as error:  # noqa: BLE001 - the one place where any fault ends
-            return _tell(_fault(error), call, traceback.format_exc())
+            details = traceback.format_exc()
+            return _stopped(call, details) if call.stop.asked else _tell(_fault(error), call, details)
 
 
 def main_inner(argv: Sequence[str], call: Call | None = None) -> int:
@@ -93,6 +94,14 @@ def _tell(error: OvercrestError, call: Call, details: str = "") -> int:
     if details and call.asks("-v", "--verbose"):
         note(details)
     return error.exit_code
+
+
+def _stopped(call: Call, details: str = "") -> int:
+    """Tell that the run was stopped.
+
+    A library that swallowed the stop, or was torn apart by it, fails in its own way afterwards: that is no fault.
+    """
+    return _tell(Interrupted("stopped as asked; nothing half-written is left behind"), call, details)
 
 
 def _usage_error(error: click.ClickException) -> InputError:

@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
+import ctypes
 import signal
+import sys
 import threading
 
 import pytest
@@ -95,3 +97,22 @@ def test_another_thread_leaves_signals_alone():
     thread.start()
     thread.join()
     assert seen == [before]
+
+
+def test_a_stop_that_python_drops_inside_a_callback_makes_no_noise(capsys):
+    seen = []
+    usual, sys.unraisablehook = sys.unraisablehook, seen.append
+    stop = Stop()
+    try:
+        with listening_for_stops(stop):
+            call_back(lambda: signal.raise_signal(signal.SIGINT))
+            assert stop.asked
+            call_back(lambda: 1 / 0)
+    finally:
+        sys.unraisablehook = usual
+    assert [unraisable.exc_type for unraisable in seen] == [ZeroDivisionError]
+
+
+def call_back(function):
+    """Call a function from C, where what it raises is dropped."""
+    ctypes.CFUNCTYPE(None)(function)()

@@ -168,8 +168,8 @@ def test_replace_replaces_an_earlier_run(demo, overcrest, work):
 
 
 def test_without_a_home_it_still_runs(demo, overcrest, work):
-    """A home that nobody, not even root, can make: below a device."""
-    nowhere = {"HOME": "/dev/null/home", "XDG_CACHE_HOME": "", "TMPDIR": str(work.parent)}
+    """A home that nobody, not even root, can make: among the processes."""
+    nowhere = {"HOME": "/proc/no-such-home", "XDG_CACHE_HOME": "", "TMPDIR": str(work.parent)}
     done = overcrest("look", demo, **nowhere)
     assert done.returncode == 0, done.stderr
     assert left_in(work) == set()

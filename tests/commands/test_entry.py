@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
+import contextlib
 import json
+import signal
 import sys
 
 import pytest
@@ -114,6 +116,18 @@ def test_an_interruption_is_exit_130_and_writes_nothing(behind, capsys):
     assert main(["plan", "site.toml"]) == 130
     assert "stopped" in capsys.readouterr().err
     assert not any(name == "write_run" for name, *_ in behind.calls)
+
+
+@pytest.mark.parametrize("error", [RuntimeError("no compiled object yet"), SiteError("cannot be read")])
+def test_a_library_that_a_stop_tore_apart_is_no_fault(behind, capsys, error):
+    def work(_report):
+        with contextlib.suppress(KeyboardInterrupt):
+            signal.raise_signal(signal.SIGINT)
+        raise error
+
+    behind.work = work
+    assert main(["plan", "site.toml"]) == 130
+    assert "stopped" in capsys.readouterr().err
 
 
 def test_warnings_of_libraries_are_silent_unless_asked_for(behind, capsys):
