@@ -8,6 +8,7 @@ from pathlib import Path
 
 import numpy as np
 
+from routing.planning.barriers import barrier_cells
 from routing.planning.benches import Bench
 from routing.planning.candidates import Candidate, Offer, offer_of
 from routing.planning.hollows import hollow_note
@@ -115,20 +116,6 @@ def _surveyed(site: Site, report: Reporter) -> _Survey:
             window = larger
 
 
-def _barrier_cells(scene: Scene, candidate: Candidate) -> float:
-    """Width of the ground above the present level at the route's highest place, in cells."""
-    route = candidate.route
-    above = route.ground_m > scene.present_m
-    crest = route.crest_index
-    if not above[crest]:
-        return 0.0
-    low = np.flatnonzero(~above)
-    first = low[low < crest].max(initial=0)
-    last = low[low > crest].min(initial=above.size - 1)
-    cell = 0.5 * float(scene.terrain.step_x_m.mean() + scene.terrain.step_y_m.mean())
-    return float(route.chainage_m[last] - route.chainage_m[first]) / cell
-
-
 def _scheme(survey_: _Survey, bench: Bench, candidate: Candidate) -> Scheme:
     site, scene = bench.site, survey_.scene
     cost = price_scheme(candidate.pipe, candidate.route.length_m, candidate.count, site.prices)
@@ -143,7 +130,7 @@ def _scheme(survey_: _Survey, bench: Bench, candidate: Candidate) -> Scheme:
             budget=site.demand.budget,
             vertical_error_m=scene.terrain.facts.vertical_error_m,
             surface=scene.terrain.facts.surface,
-            barrier_cells=_barrier_cells(scene, candidate),
+            barrier_cells=barrier_cells(scene, candidate.route),
         )
     )
     return Scheme(0, candidate.route, candidate.pipe, candidate.count, candidate.appraisal, cost, verdict)
