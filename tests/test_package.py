@@ -113,7 +113,8 @@ def imported_by_tests():
                 found |= {alias.name.split(".")[0] for alias in node.names}
             elif isinstance(node, ast.ImportFrom) and node.module and not node.level:
                 found.add(node.module.split(".")[0])
-    return found - set(sys.stdlib_module_names) - {"routing", "twins"}
+    own = {path.stem for path in (ROOT / "tests").rglob("*.py")} | {"routing", "twins"}
+    return found - set(sys.stdlib_module_names) - own
 
 
 def test_what_the_tests_import_is_in_the_test_extra():
