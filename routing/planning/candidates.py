@@ -15,6 +15,7 @@ from routing.search import Found, Limitation, PathEdges, largest_discharge, leas
 # Lengths on the graph are a little shorter than the sampled long section; a few rounds settle that.
 _ROUNDS = 5
 _SLACK_M = 1e-6
+_HAIR = 1e-9
 #: Deepest trench that the site file takes (search.bed_offset_m).
 DEEPEST_TRENCH_M = 10.0
 
@@ -153,6 +154,15 @@ def _counts(bench: Bench) -> Iterator[tuple[int, float]]:
             yield count, required / count
 
 
+def _straightened(bench: Bench, pipe: Pipe, path: PathEdges, discharge: float) -> PathEdges:
+    """Take the shortest of the paths that carry as much: where suction governs, a search may end with a detour."""
+    flow = bench.flow(pipe)
+    if discharge >= flow.carried_at_length(path.length_m) * (1.0 - _HAIR):
+        return path  # the fall governs: a shorter path would carry more
+    found = shortest_path(bench.job, flow.limit_at(discharge * (1.0 - _HAIR)))
+    return found.path if found.path is not None and found.path.length_m < path.length_m else path
+
+
 def offer_of(bench: Bench, pipe: Pipe) -> Offer:
     """Find every route that a pipe has to offer.
 
@@ -165,7 +175,8 @@ def offer_of(bench: Bench, pipe: Pipe) -> Offer:
         if best.path is None or best.low <= 0.0:
             offer = _least_bad(bench, pipe, best, 1, None)
             return replace(offer, proven=offer.proven and best.proven_outside)
-        return Offer((_candidate(bench, pipe, best.path, best, 1, None),), None, best.proven_outside)
+        path = _straightened(bench, pipe, best.path, best.low)
+        return Offer((_candidate(bench, pipe, path, best, 1, None),), None, best.proven_outside)
     found, proven = [], best.proven_outside
     for count, duty in _counts(bench):
         if best.path is None or duty > best.high * (1.0 + bench.site.search.tolerance):

@@ -124,15 +124,8 @@ def _under_water(site: Site, terrain: Terrain, body: WaterBody, outlet: CellLike
     """Say why nothing parts the water from the outlet."""
     outlet_key = site.outlet.at.key or "outlet"
     ground, water = float(terrain.elevation_m[outlet]), f"water at {body.level_m:.2f} m"
-    if saddle is not None and saddle.level_m > body.level_m:  # only a polygon can reach over it
-        return site_problem(
-            site,
-            "water.polygon_file",
-            "The polygon of the water reaches over the barrier to the outlet.",
-            found=f"{water}, ground up to {saddle.level_m:.2f} m between intake and outlet",
-            allowed="a polygon that ends at the shore",
-            remedy="correct the polygon, or leave it out: the water is then found from its level",
-        )
+    if saddle is not None and saddle.level_m > body.level_m:
+        return _over_the_barrier(site, body, saddle)
     if saddle is not None:
         x, y = xy_of(terrain, saddle.row, saddle.col)
         digits = 6 if abs(terrain.transform[0]) < 0.1 else 1
@@ -160,4 +153,26 @@ def _under_water(site: Site, terrain: Terrain, body: WaterBody, outlet: CellLike
         found=f"{water}, ground at the outlet {ground:.2f} m",
         allowed="an outlet beyond ground that is higher than the water",
         remedy="check both positions and the level; a DEM of large cells can leave out a narrow dam",
+    )
+
+
+def _over_the_barrier(site: Site, body: WaterBody, saddle: Crest) -> Problem:
+    """Say why the water body reaches the outlet although higher ground parts them."""
+    between = f"water at {body.level_m:.2f} m, ground up to {saddle.level_m:.2f} m between intake and outlet"
+    if body.source == "polygon":
+        return site_problem(
+            site,
+            "water.polygon_file",
+            "The polygon of the water reaches over the barrier to the outlet.",
+            found=between,
+            allowed="a polygon that ends at the shore",
+            remedy="correct the polygon, or leave it out: the water is then found from its level",
+        )
+    return site_problem(
+        site,
+        site.outlet.at.key or "outlet",
+        "By the DEM's cells the water reaches the outlet: low cells join across the barrier, at corners or by a gap.",
+        found=between,
+        allowed="an outlet outside the water body",
+        remedy="give water.polygon_file, or correct the low cells of the DEM",
     )

@@ -383,6 +383,19 @@ def test_a_present_level_above_the_spill_names_the_saddle(make_job, ground):
         assert problem.allowed == "a level below 101.20 m"
 
 
+def test_low_cells_that_join_across_the_barrier_at_corners_are_told(make_job, ground):
+    values = ground.reservoir(top=120.0, water=100.0)
+    values[:, 29:32] = 120.0
+    values[:, 32:] = 90.0
+    values[19, 29], values[20, 30], values[21, 31] = 99.0, 99.0, 99.0
+    values[5:35, 2:29] = 100.0
+    problem = refusal(make_job(values))
+    assert problem.key == "outlet.x"
+    assert "at corners" in problem.what
+    # Bilinear saddle of a patch 99, 120, 120, 99: (99*99 - 120*120) / (2*99 - 2*120).
+    assert "ground up to 109.50 m" in problem.found
+
+
 def test_a_lowest_level_above_the_present_one_read_off_the_dem_is_refused(make_job, ground):
     problem = refusal(make_job(ground.reservoir(), water={"present_level_m": None, "lowest_level_m": 100.5}))
     assert problem.key == "water.lowest_level_m"
