@@ -91,7 +91,10 @@ def _ways(need_m: float, limitation: Limitation, reserve_m: float) -> str:
 def _shortfall(pipe: Pipe, duty: float | None, raised: Found, limitation: Limitation, reserve_m: float) -> Shortfall:
     """Say what would make a route that keeps the suction limit."""
     if raised.path is None:
-        text = f"{_words(pipe, duty)}: no ground that holds data joins intake and outlet within reach of the fall."
+        text = (
+            f"{_words(pipe, duty)}: no ground that holds data joins intake and outlet. What would help: a DEM without the "
+            "gap between them, or the gap filled."
+        )
         return Shortfall(pipe.name, duty, "cut off", None, text)
     need = raised.high
     if need <= 0.0:  # the search's own rule is met; the sampled long section misses by a hair
