@@ -92,8 +92,8 @@ def _shortfall(pipe: Pipe, duty: float | None, raised: Found, limitation: Limita
     """Say what would make a route that keeps the suction limit."""
     if raised.path is None:
         text = (
-            f"{_words(pipe, duty)}: no ground that holds data joins intake and outlet. What would help: a DEM without the "
-            "gap between them, or the gap filled."
+            f"{_words(pipe, duty)}: no ground that holds data joins intake and outlet. What would help: a DEM without "
+            "the gap between them, or the gap filled."
         )
         return Shortfall(pipe.name, duty, "cut off", None, text)
     need = raised.high
