@@ -83,7 +83,7 @@ def scheme_table(plan: Plan, top: int = MOST_ROWS) -> Table:
     table.add_column("decided by", overflow="fold")
     for scheme in plan.schemes[:top]:
         cells = [Text(shown_text(how, clean(field.get(plan, scheme)))) for field, how in shown]
-        table.add_row(*cells, _verdict_text(scheme.verdict), Text(scheme.verdict.governing.title))
+        table.add_row(*cells, _verdict_text(scheme.verdict), Text(scheme.verdict.governing.name.replace("_", " ")))
     return table
 
 

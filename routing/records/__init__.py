@@ -5,14 +5,17 @@ from routing.records.asks import (
     DemandAsk,
     GroundRule,
     IntakeAsk,
+    IntakeKind,
     LimitsAsk,
     OutletAsk,
+    OutletKind,
     PointAsk,
     PriceList,
     SearchAsk,
     Site,
     TerrainAsk,
     WaterAsk,
+    ZoneAsk,
 )
 from routing.records.ground import (
     BoolArray,
@@ -27,6 +30,9 @@ from routing.records.ground import (
     TerrainFacts,
     WaterBody,
     WaterShown,
+    Zone,
+    ZoneKind,
+    ZoneMap,
 )
 from routing.records.hydraulic import (
     STANDARD_GRAVITY_MS2,
@@ -50,13 +56,13 @@ from routing.records.results import (
     Grade,
     Outlook,
     Plan,
-    Proof,
-    Route,
+    Sample,
     Scheme,
     Setting,
     Shortfall,
     Verdict,
 )
+from routing.records.routes import Crossing, Proof, Route
 
 __all__ = [
     "GRADES",
@@ -69,6 +75,7 @@ __all__ = [
     "Check",
     "Cost",
     "CostLine",
+    "Crossing",
     "DemandAsk",
     "FloatArray",
     "Governs",
@@ -77,11 +84,13 @@ __all__ = [
     "GroundLine",
     "GroundRule",
     "IntakeAsk",
+    "IntakeKind",
     "Levels",
     "Limits",
     "LimitsAsk",
     "Losses",
     "OutletAsk",
+    "OutletKind",
     "Outlook",
     "Pipe",
     "PipePrices",
@@ -93,6 +102,7 @@ __all__ = [
     "Proof",
     "Route",
     "Saddle",
+    "Sample",
     "Scheme",
     "SearchAsk",
     "Setting",
@@ -108,4 +118,8 @@ __all__ = [
     "WaterAsk",
     "WaterBody",
     "WaterShown",
+    "Zone",
+    "ZoneAsk",
+    "ZoneKind",
+    "ZoneMap",
 ]

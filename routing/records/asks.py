@@ -6,10 +6,12 @@ from dataclasses import dataclass, field
 from pathlib import Path
 from typing import Literal
 
-from routing.records.ground import SurfaceKind, WaterShown
+from routing.records.ground import SurfaceKind, WaterShown, ZoneKind
 from routing.records.hydraulic import Losses, Pipe, Water
 
 GroundRule = Literal["bilinear", "cells"]
+IntakeKind = Literal["point", "shore"]
+OutletKind = Literal["point", "line", "polygon", "anywhere"]
 
 
 @dataclass(frozen=True, slots=True)
@@ -65,20 +67,34 @@ class WaterAsk:
 
 @dataclass(frozen=True, slots=True)
 class IntakeAsk:
-    """The intake. ``mouth_level_m``: top of its mouth; ``None``: the DEM level there, where it shows the bed."""
+    """The intake.
+
+    ``mouth_level_m``: top of its mouth; ``None``: the DEM level there, where it shows the bed. ``kind`` "shore":
+    anywhere along the shore at the lowest level, ``at`` being a point in the water; ``underwater_length_m`` is then
+    the pipe from the mouth to the shore, ``None``: measured on the bed that the DEM shows.
+    """
 
     at: PointAsk
     mouth_level_m: float | None = None
+    kind: IntakeKind = "point"
+    underwater_length_m: float | None = None
 
 
 @dataclass(frozen=True, slots=True)
 class OutletAsk:
-    """The outlet. Its axis is at ``level_m``, or ``height_above_ground_m`` above the DEM where that is ``None``."""
+    """The outlet.
+
+    Its axis is at ``level_m``, or ``height_above_ground_m`` above the DEM where that is ``None``. ``kind`` "line" and
+    "polygon": anywhere on the shapes of ``at.file``; "anywhere": wherever the ground is low enough, drains to the DEM's
+    edge and lies at least ``beyond_toe_m`` from the barrier.
+    """
 
     at: PointAsk
     level_m: float | None = None
     height_above_ground_m: float = 0.0
     tailwater_level_m: float | None = None
+    kind: OutletKind = "point"
+    beyond_toe_m: float = 0.0
 
 
 @dataclass(frozen=True, slots=True)
@@ -94,6 +110,19 @@ class LimitsAsk:
     collapse_safety: float = 2.0
     gravity_ms2: float = 9.80665
     pipe_load_hours: float = 8760.0
+
+
+@dataclass(frozen=True, slots=True)
+class ZoneAsk:
+    """Polygons of the user's that bar a route, or multiply what a metre costs (``cost_factor``)."""
+
+    name: str
+    file: Path
+    layer: str | None = None
+    kind: ZoneKind = "barred"
+    cost_factor: float = 1.0
+    key: str = ""
+    line: int | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -148,5 +177,6 @@ class Site:
     search: SearchAsk = field(default_factory=SearchAsk)
     liquid: Water | None = None
     lines: dict[str, int] = field(default_factory=dict)
+    zones: tuple[ZoneAsk, ...] = ()
     sha256: str = ""
     assumptions: tuple[str, ...] = ()

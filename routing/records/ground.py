@@ -16,6 +16,7 @@ BoolArray = NDArray[np.bool_]
 
 SurfaceKind = Literal["ground", "canopy", "unknown"]
 WaterShown = Literal["surface", "bed"]
+ZoneKind = Literal["barred", "cost"]
 
 
 @dataclass(frozen=True, slots=True)
@@ -169,6 +170,41 @@ class WaterBody:
     touches_open_border: bool
     spill: Saddle | None
     source: Literal["level", "polygon"]
+
+
+@dataclass(frozen=True, slots=True)
+class Zone:
+    """One zone of the user's, in the DEM's CRS, made valid and joined."""
+
+    name: str
+    kind: ZoneKind
+    cost_factor: float
+    shape: Polygon | MultiPolygon
+
+
+@dataclass(frozen=True, slots=True)
+class ZoneMap:
+    """Zones laid over a window.
+
+    Attributes
+    ----------
+    zones
+        The zones, also those outside the window.
+    barred : (rows, cols) bool array
+        Cells whose centre lies in the interior of a barred zone.
+    blocked_moves : (rows, cols) uint32 array
+        A bit for each move whose segment runs through the interior of a barred zone.
+    cost_factor : (rows, cols) float64 array
+        What a metre costs in each cell, 1 outside all zones; where zones overlap, the dearest counts.
+    notes
+        What was found and mended (invalid shapes, slivers, zones outside the DEM).
+    """
+
+    zones: tuple[Zone, ...]
+    barred: BoolArray
+    blocked_moves: NDArray[np.uint32]
+    cost_factor: FloatArray
+    notes: tuple[str, ...] = ()
 
 
 @dataclass(frozen=True, slots=True)

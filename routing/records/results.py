@@ -3,93 +3,16 @@
 from __future__ import annotations
 
 from dataclasses import dataclass, field
-from typing import TYPE_CHECKING, Literal
-
-import numpy as np
-from numpy.typing import NDArray
+from typing import Literal
 
 from routing.records.asks import Site
-from routing.records.ground import FloatArray, PlacedPoint, Saddle, Terrain, WaterBody
+from routing.records.ground import FloatArray, PlacedPoint, Saddle, Terrain, WaterBody, Zone
 from routing.records.hydraulic import Governs, Levels, Limits, Losses, Pipe, SiphonRun, Water
-
-if TYPE_CHECKING:
-    from shapely import LineString
+from routing.records.routes import Crossing, Route
 
 Grade = Literal["fit", "caution", "unfit"]
 #: From good to bad; a verdict is as bad as its worst check.
 GRADES: tuple[Grade, ...] = ("fit", "caution", "unfit")
-
-
-@dataclass(frozen=True, slots=True)
-class Proof:
-    """How good a route is known to be.
-
-    Attributes
-    ----------
-    graph_length_m
-        Its length on the search graph.
-    straight_m
-        3-D straight distance between the ends: no route of any kind is shorter.
-    free_ratio
-        Largest ratio of shortest graph path to straight line on free ground, from the actual moves here.
-    whole_dem
-        Whether the answer is proven for the whole DEM, not only for the window.
-    discharge_low_m3s, discharge_high_m3s
-        Bracket of the search for the largest discharge over any route (per pipe).
-    text
-        The above in one or two sentences.
-    """
-
-    graph_length_m: float
-    straight_m: float
-    free_ratio: float
-    whole_dem: bool
-    discharge_low_m3s: float
-    discharge_high_m3s: float
-    text: str
-
-
-@dataclass(frozen=True, slots=True)
-class Route:
-    """A polyline with its sampled long section.
-
-    Attributes
-    ----------
-    name
-        ``R1``, ``R2``, ... in the order found.
-    cells : (n, 2) int array
-        Rows and columns of the window that the route visits.
-    line
-        The route in the DEM's CRS.
-    x, y, chainage_m, ground_m : (m,) arrays
-        The sampled long section: map position, 3-D ground length from the intake, bilinear ground level.
-    crest_index
-        Position of the highest ground in the samples.
-    """
-
-    name: str
-    cells: NDArray[np.intp]
-    line: LineString
-    x: FloatArray
-    y: FloatArray
-    chainage_m: FloatArray
-    ground_m: FloatArray
-    proof: Proof
-
-    @property
-    def length_m(self) -> float:
-        """Length along the ground."""
-        return float(self.chainage_m[-1])
-
-    @property
-    def crest_index(self) -> int:
-        """Position of the highest ground."""
-        return int(np.argmax(self.ground_m))
-
-    @property
-    def crest_m(self) -> float:
-        """Highest ground on the route."""
-        return float(self.ground_m[self.crest_index])
 
 
 @dataclass(frozen=True, slots=True)
@@ -231,6 +154,32 @@ class Scheme:
 
 
 @dataclass(frozen=True, slots=True)
+class Sample:
+    """A candidate found by a weighted search, appraised beside the exact answer.
+
+    Attributes
+    ----------
+    pipe
+        Name of the pipe.
+    weight
+        Metres of length that one metre of ground above the suction limit, over one metre of route, counts for.
+    route, appraisal
+        The route found, and its appraisal at the duty.
+    missing_m
+        What is missing to the suction limit, in metres of trench, level or reserve (0 or less: nothing).
+    same_as
+        Name of a route of the schemes that is the same path, or "".
+    """
+
+    pipe: str
+    weight: float
+    route: Route
+    appraisal: Appraisal
+    missing_m: float
+    same_as: str
+
+
+@dataclass(frozen=True, slots=True)
 class Shortfall:
     """Why no route is feasible for a pipe, and what would make one.
 
@@ -285,6 +234,12 @@ class Plan:
     assumptions: tuple[str, ...]
     warnings: tuple[str, ...]
     timings_s: dict[str, float] = field(default_factory=dict)
+    zones: tuple[Zone, ...] = ()
+    crossings: tuple[Crossing, ...] = ()
+    crossings_note: str = ""
+    samples: tuple[Sample, ...] = ()
+    lowest_water: WaterBody | None = None
+    choice_notes: tuple[str, ...] = ()
 
     @property
     def feasible(self) -> bool:
