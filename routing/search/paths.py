@@ -14,7 +14,7 @@ from routing.search.grid import Grid
 from routing.search.reaching import Limitation, Reach
 
 # Shares of an edge at which it is looked at: every patch border of every move is among them (halves and thirds).
-_SHARES = np.arange(1, 25) / 24.0
+_SHARES = np.arange(25) / 24.0
 
 
 @dataclass(frozen=True, slots=True)
@@ -92,12 +92,12 @@ def path_edges(grid: Grid, cells: NDArray[np.intp], limitation: Limitation, star
     edge = np.hypot(grid.ground.plan[cells[:-1, 0], taken], np.diff(level))
     far = start_length_m + np.concatenate([[0.0], np.cumsum(edge)])
     if limitation.rule == "bilinear" and limitation.along:
-        row = (cells[:-1, 0:1] + np.diff(cells[:, 0:1], axis=0) * _SHARES).ravel()
-        col = (cells[:-1, 1:2] + np.diff(cells[:, 1:2], axis=0) * _SHARES).ravel()
-        level_at = _ground_at(grid, row, col).reshape(-1, _SHARES.size)
+        row = cells[:-1, 0:1] + np.diff(cells[:, 0:1], axis=0) * _SHARES
+        col = cells[:-1, 1:2] + np.diff(cells[:, 1:2], axis=0) * _SHARES
+        level_at = _ground_at(grid, row, col)
         share, exact = _peak_share(level_at), kernel.path_highs(grid.ground, grid.moves, True, flat[:-1], taken)  # noqa: FBT003
-        at_length = np.append((far[:-1, None] + edge[:, None] * _SHARES).ravel(), far[:-1] + edge * share)
-        at_level = np.append(level_at.ravel(), exact)
+        at_length = np.append((far[:-1, None] + edge[:, None] * _SHARES[1:]).ravel(), far[:-1] + edge * share)
+        at_level = np.append(level_at[:, 1:].ravel(), exact)
     else:
         at_length = far[1:]
         at_level = kernel.path_highs(grid.ground, grid.moves, limitation.rule == "bilinear", flat[:-1], taken)
