@@ -25,7 +25,7 @@ def walk(seed, neighbours, steps=12, size=9):
     while len(cells) <= steps:
         move = twin.MOVES[neighbours][rng.integers(neighbours)]
         cell = (cells[-1][0] + move[0], cells[-1][1] + move[1])
-        if 0 <= min(cell) and max(cell) < size:
+        if min(cell) >= 0 and max(cell) < size:
             cells.append(cell)
     return ground, (step_x, step_y), np.array(cells)
 
