@@ -12,6 +12,7 @@ from routing.search.grid import Grid, free_ratio, prepare_grid
 from routing.search.moves import move_list
 from routing.search.paths import PathEdges, border_band, may_escape, path_edges
 from routing.search.reaching import Limitation, Reach, reach, search_grid
+from routing.search.weighing import height_penalty, weighted_path
 
 __all__ = [
     "Crest",
@@ -25,6 +26,7 @@ __all__ = [
     "border_band",
     "cache_folder",
     "free_ratio",
+    "height_penalty",
     "kernels_ready",
     "largest_discharge",
     "least_raise",
@@ -37,4 +39,5 @@ __all__ = [
     "reach",
     "search_grid",
     "shortest_path",
+    "weighted_path",
 ]

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Any
 
 import numpy as np
@@ -67,11 +67,28 @@ class Grid:
         return int(np.abs(self.moves.drow).max())
 
     def straight_m(self, one: tuple[int, int], other: tuple[int, int]) -> float:
-        """3-D straight distance between two cell centres, with the mean steps of the rows between them."""
-        rows = slice(min(one[0], other[0]), max(one[0], other[0]) + 1)
-        across = (other[1] - one[1]) * float(self.step_x_m[rows].min())
-        down = (other[0] - one[0]) * float(self.step_y_m[rows].min())
-        return float(np.sqrt(across**2 + down**2 + (self.level[other] - self.level[one]) ** 2))
+        """Return a 3-D length in m that no line between two cell centres falls short of.
+
+        Where all rows have the same steps it is the straight distance. Else a line may stray to rows of smaller steps,
+        but one that strays k rows beyond its ends has 2 k rows more to go: the least over k counts.
+        """
+        first, last = sorted((one[0], other[0]))
+        least_x, least_y = _least_within(self.step_x_m, first, last), _least_within(self.step_y_m, first, last)
+        across = (other[1] - one[1]) * least_x
+        down = (last - first + 2.0 * np.arange(least_y.size)) * least_y
+        return float(np.sqrt(across**2 + down**2 + (self.level[other] - self.level[one]) ** 2).min())
+
+
+def _least_within(steps: FloatArray, first: int, last: int) -> FloatArray:
+    """Least step of the rows from ``first`` to ``last``, of those and one row more on either side, and so on."""
+    after = steps.size - 1 - last
+    beyond = max(first, after)
+    rows = np.pad(steps, (beyond - first, beyond - after), mode="edge")
+    end = beyond + last - first + 1
+    least: FloatArray = np.minimum.accumulate(
+        np.concatenate([[rows[beyond:end].min()], np.minimum(rows[:beyond][::-1], rows[end:])])
+    )
+    return least
 
 
 def _refuse(what: str, found: object, allowed: str, key: str) -> InputError:
@@ -231,12 +248,46 @@ def prepare_grid(
         high=_highest_within(level, table.reach),
         blocked=_blocked_bits(blocked_moves, (rows, cols), table.drow.size),
         plan=_plan_lengths(step_x, step_y, table),
+        weight=np.zeros(0),
         rows=rows,
         cols=cols,
     )
     moves = kernel.Moves(table.drow * cols + table.dcol, *table[:-1])
     flags = _flags(has_ground, _mask(barred, level.shape, "barred"), table.reach)
     return Grid(ground, moves, flags, level, has_ground, step_x, step_y, neighbours)
+
+
+def weighted_grid(grid: Grid, cell_weight: ArrayLike) -> tuple[Grid, float]:
+    """Return the grid with edges that count for more or less than their length, and the scale of its lengths.
+
+    An edge counts for its 3-D length times the mean weight of the cells it runs through, by the share in each. Such a
+    grid knows no ceiling, since its labels are no longer lengths.
+
+    Parameters
+    ----------
+    grid
+        The grid.
+    cell_weight : (rows, cols) array
+        What a metre counts for in each cell, above 0 and finite.
+
+    Returns
+    -------
+    Grid, float
+        The grid with weights scaled to 1 at the least, and the least weight: labels times it are weighted lengths.
+
+    Raises
+    ------
+    InputError
+        If the weights have another shape, or one is not above 0 and finite.
+    """
+    weight = np.ascontiguousarray(cell_weight, dtype=np.float64)
+    if weight.shape != grid.shape:
+        raise _refuse("weights have another shape", weight.shape, f"{grid.shape}", "cell_weight")
+    if not np.all(np.isfinite(weight) & (weight > 0.0)):
+        bad = weight[~(np.isfinite(weight) & (weight > 0.0))][0]
+        raise _refuse("weights must be finite and above zero", bad, "numbers > 0", "cell_weight")
+    least = float(weight.min())
+    return replace(grid, ground=grid.ground._replace(weight=(weight / least).ravel())), least
 
 
 def free_ratio(grid: Grid) -> float:

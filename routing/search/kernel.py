@@ -48,6 +48,7 @@ class Ground(NamedTuple):
     high: NDArray[np.float32]  # (cells,) at or above the highest ground within one move; (0,) without a ceiling
     blocked: NDArray[np.uint32]  # (cells,) a bit a move; (0,) where no move is blocked
     plan: NDArray[np.float64]  # (rows, moves) plan length of each move from each row
+    weight: NDArray[np.float64]  # (cells,) what a metre counts for, 1 or more; (0,) where all count the same
     rows: int
     cols: int
 
@@ -65,6 +66,9 @@ class Moves(NamedTuple):
     crossed: NDArray[np.intp]
     corner_start: NDArray[np.intp]
     corner: NDArray[np.intp]
+    cover_start: NDArray[np.intp]
+    cover_cell: NDArray[np.intp]
+    cover_share: NDArray[np.float64]
 
 
 class Rules(NamedTuple):
@@ -205,6 +209,16 @@ def under_ceiling(
 
 
 @njit(cache=True)
+def weight_along(ground: Ground, moves: Moves, cell: int, move: int) -> float:
+    """Mean of the weights of the cells that a move runs through, by the share of it in each."""
+    total = 0.0
+    for i in range(moves.cover_start[move], moves.cover_start[move + 1]):
+        through = cell + moves.cover_cell[i, 0] * ground.cols + moves.cover_cell[i, 1]
+        total += moves.cover_share[i] * ground.weight[through]
+    return total
+
+
+@njit(cache=True)
 def source_fits(ground: Ground, rules: Rules, field: Field, cell: int, start: float) -> bool:
     """Whether a source may be used: on ground, not barred, under the ceiling, a better label than it has."""
     top = min(rules.cap_level, rules.ceiling_level - rules.ceiling_gradient * start)
@@ -247,6 +261,7 @@ def settle(
     ring = head.size - 1
     room = pool_cell.size - step.size - queue.source_cell.size
     high, ceiling, gradient, cap = ground.high, rules.ceiling_level, rules.ceiling_gradient, rules.cap_level
+    weighted = ground.weight.size > 0
     has_ceiling, has_blocked, has_goal = rules.has_ceiling, ground.blocked.size > 0, rules.goal_row >= 0
     longest_to_goal = rules.longest * (1.0 + 1e-12)  # a route of exactly the longest length is kept
     bucket, live, free, used = state[BUCKET], state[LIVE], state[FREE], state[USED]
@@ -310,7 +325,10 @@ def settle(
                 if known <= here + flat:  # no 3-D length can be below the plan length
                     continue
                 rise = level[to] - from_level
-                reached = here + np.sqrt(flat * flat + rise * rise)
+                edge = np.sqrt(flat * flat + rise * rise)
+                if weighted:
+                    edge *= weight_along(ground, moves, cell, move)
+                reached = here + edge
                 if known <= reached or reached > longest:
                     continue
                 if has_goal:  # leave out what even a straight line would make too long

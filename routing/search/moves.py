@@ -40,6 +40,8 @@ class MoveTable(NamedTuple):
         Cells whose interior the move crosses, both end cells left out.
     corner_start, corner : (m + 1,) and (k, 4) arrays
         The other two cells at each corner that the move passes through exactly, as (row, col, row, col).
+    cover_start, cover_cell, cover_share : (m + 1,), (c, 2) and (c,) arrays
+        All cells that the move runs through, its ends included, and the share of its length in each.
     reach
         The longest row or column step of any move.
     """
@@ -53,6 +55,9 @@ class MoveTable(NamedTuple):
     crossed: NDArray[np.intp]
     corner_start: NDArray[np.intp]
     corner: NDArray[np.intp]
+    cover_start: NDArray[np.intp]
+    cover_cell: NDArray[np.intp]
+    cover_share: NDArray[np.float64]
     reach: int
 
 
@@ -104,17 +109,20 @@ def _pieces(move: tuple[int, int]) -> list[tuple[tuple[int, int], tuple[Fraction
     return found
 
 
-def _crossed(move: tuple[int, int]) -> list[tuple[int, int]]:
-    """Cells whose interior a move crosses, without its end cells."""
+def _cover(move: tuple[int, int]) -> list[tuple[tuple[int, int], Fraction]]:
+    """Cells that a move runs through, each with the share of the move in it."""
     half = Fraction(1, 2)
-    shares = _cuts(move, half)
-    cells = []
-    for start, end in pairwise(shares):
+    found = []
+    for start, end in pairwise(_cuts(move, half)):
         middle = (start + end) / 2
         cell = (floor(move[0] * middle + half), floor(move[1] * middle + half))
-        if cell not in {(0, 0), move}:
-            cells.append(cell)
-    return cells
+        found.append((cell, end - start))
+    return found
+
+
+def _crossed(move: tuple[int, int]) -> list[tuple[int, int]]:
+    """Cells whose interior a move crosses, without its end cells."""
+    return [cell for cell, _ in _cover(move) if cell not in {(0, 0), move}]
 
 
 def _corners(move: tuple[int, int]) -> list[tuple[int, int, int, int]]:
@@ -149,6 +157,7 @@ def move_table(neighbours: Neighbours) -> MoveTable:
     pieces = [_pieces(move) for move in moves]
     crossed = [_crossed(move) for move in moves]
     corners = [_corners(move) for move in moves]
+    cover = [_cover(move) for move in moves]
     return MoveTable(
         drow=np.array([move[0] for move in moves], dtype=np.intp),
         dcol=np.array([move[1] for move in moves], dtype=np.intp),
@@ -159,5 +168,8 @@ def move_table(neighbours: Neighbours) -> MoveTable:
         crossed=np.array([cell for group in crossed for cell in group], dtype=np.intp).reshape(-1, 2),
         corner_start=_starts([list(group) for group in corners]),
         corner=np.array([pair for group in corners for pair in group], dtype=np.intp).reshape(-1, 4),
+        cover_start=np.cumsum([0, *(len(group) for group in cover)], dtype=np.intp),
+        cover_cell=np.array([cell for group in cover for cell, _ in group], dtype=np.intp),
+        cover_share=np.array([float(share) for group in cover for _, share in group], dtype=np.float64),
         reach=max(abs(step) for move in moves for step in move),
     )

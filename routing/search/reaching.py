@@ -176,7 +176,7 @@ def _rules(grid: Grid, limitation: Limitation) -> kernel.Rules:
 def _new_queue(grid: Grid, cells: NDArray[np.int32], starts: FloatArray) -> kernel.Queue:
     """Return an empty queue with a ring long enough that no label laps the bucket at hand."""
     width = bucket_width(grid)
-    longest_edge = float(np.hypot(grid.ground.plan.max(), np.ptp(grid.level)))
+    longest_edge = float(np.hypot(grid.ground.plan.max(), np.ptp(grid.level)) * grid.ground.weight.max(initial=1.0))
     ring = 1 << int(np.ceil(np.log2(longest_edge / width + 3.0)))
     pool = _FIRST_POOL + 2 * cells.size
     return kernel.Queue(
@@ -214,6 +214,10 @@ def search_grid(
     """
     cells, starts = _flat_sources(grid, sources, start_length_m)
     rules = _rules(grid, limitation)
+    if grid.ground.weight.size and (rules.has_ceiling or np.isfinite(rules.longest)):
+        raise InputError(
+            Problem("a weighted search knows no ceiling and no longest length", found=f"{limitation}", key="limitation")
+        )
     queue = _new_queue(grid, cells, starts)
     size = grid.flags.size
     flags = grid.flags.copy()
