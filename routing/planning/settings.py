@@ -11,7 +11,8 @@ from routing.planning.scenes import Scene
 from routing.planning.troubles import site_problem
 from routing.records import Levels, Limits, Setting, Site
 
-_LOCAL_DATUM = re.compile(r"\b(local|assumed|arbitrary|invented)\b", re.IGNORECASE)
+# Writers of GeoTIFF name a vertical datum "unknown" where they were told of none; DEMs on a works datum say "local".
+_LOCAL_DATUM = re.compile(r"\b(local|assumed|arbitrary|invented|unknown|not stated)\b", re.IGNORECASE)
 
 
 @dataclass(frozen=True, slots=True)
@@ -25,8 +26,7 @@ class _Air:
 def _altitude_of_datum(site: Site, scene: Scene) -> float | Problem:
     """Take the present level for the altitude, if the datum says that it is one."""
     datum = scene.terrain.facts.vertical_datum
-    stated = site.terrain.vertical_datum
-    if datum == "not stated" or (stated is not None and _LOCAL_DATUM.search(stated)):
+    if _LOCAL_DATUM.search(datum):
         return site_problem(
             site,
             "air.altitude_m",
