@@ -7,6 +7,7 @@ siphon; `lowest_crest` floods the bilinear ground.
 from routing.search.choosing import Flow, Found, Job, largest_discharge, least_raise, shortest_path
 from routing.search.compiling import cache_folder, kernels_ready
 from routing.search.crests import Crest, lowest_crest
+from routing.search.divides import Pass, distinct_passes, divide_cells, join_paths
 from routing.search.gaps import moves_over_gaps
 from routing.search.grid import Grid, free_ratio, prepare_grid
 from routing.search.moves import move_list
@@ -21,12 +22,16 @@ __all__ = [
     "Grid",
     "Job",
     "Limitation",
+    "Pass",
     "PathEdges",
     "Reach",
     "border_band",
     "cache_folder",
+    "distinct_passes",
+    "divide_cells",
     "free_ratio",
     "height_penalty",
+    "join_paths",
     "kernels_ready",
     "largest_discharge",
     "least_raise",

@@ -16,7 +16,7 @@ from pathlib import Path
 import platformdirs
 
 _HERE = Path(__file__).parent
-_KERNEL_FILES = ("kernel.py", "flooding.py")
+_KERNEL_FILES = ("kernel.py", "flooding.py", "dividing.py")
 
 
 def _fingerprint() -> str:

@@ -1,0 +1,95 @@
+"""The divide against scikit-image's watershed, and crossings on made ridges."""
+
+import numpy as np
+import pytest
+from scipy.ndimage import gaussian_filter
+from skimage.segmentation import watershed
+
+from routing.search import Limitation, distinct_passes, divide_cells, join_paths, prepare_grid, search_grid
+from routing.search.dividing import spread_marks
+
+
+def seeds(shape, water, outlet):
+    one, other = np.zeros(shape, bool), np.zeros(shape, bool)
+    one[water] = other[outlet] = True
+    return one, other
+
+
+@pytest.mark.parametrize("seed", range(5))
+def test_sides_equal_a_watershed_of_two_markers(seed):
+    """skimage.segmentation.watershed (source: scikit-image) floods from the same markers."""
+    ground = gaussian_filter(np.random.default_rng(seed).normal(size=(60, 70)), 4)
+    ground = (ground - ground.min()) / np.ptp(ground)
+    rank = (ground * 65_535).astype(np.uint16)
+    mark = np.zeros(ground.shape, np.uint8)
+    mark[10, 10], mark[45, 60] = 1, 2
+    markers = mark.astype(np.int32)
+    spread_marks(rank.ravel(), mark.ravel(), np.ones(ground.size, bool), 70)
+    expected = watershed(rank, markers, connectivity=2)
+    assert (mark == expected).mean() > 0.995  # ties in rank may fall to either side
+
+
+def test_ground_without_data_parts_the_sides():
+    ground = np.zeros((9, 11))
+    ground[:, 5] = 3.0
+    ground[0:4, 5] = np.nan
+    divide = divide_cells(prepare_grid(ground, 1.0, 1.0), *seeds(ground.shape, (4, 1), (4, 9)))
+    assert not divide[0:3].any()
+    assert divide[5:, 4:7].any(axis=1).all()
+
+
+def ridge(gaps, *, height=6.0, rows=200, cols=81):
+    """A ridge across the middle with gaps: {row: level}."""
+    ground = np.zeros((rows, cols))
+    ground[:, 38:43] = height
+    for row, level in gaps.items():
+        ground[row - 2 : row + 3, 38:43] = level
+    return ground
+
+
+def passes_of(ground, ceiling, intake=(100, 5), outlet=(100, 75)):
+    grid = prepare_grid(ground, 1.0, 1.0)
+    there = search_grid(grid, [intake], Limitation(ceiling)).length_m
+    back = search_grid(grid, [outlet], Limitation(ceiling)).length_m
+    divide = divide_cells(grid, *seeds(ground.shape, intake, outlet))
+    return distinct_passes(divide, there + back, ground), there + back
+
+
+def test_gaps_far_apart_are_crossings_of_their_own():
+    found, length = passes_of(ridge({30: 2.0, 100: 3.0, 160: 1.0}), ceiling=4.0)
+    assert [abs(p.cell[0] - row) <= 2 for p, row in zip(found, (100, 160, 30), strict=True)] == [True] * 3
+    assert [p.length_m for p in found] == sorted(p.length_m for p in found)
+    for p in found:
+        assert p.length_m == length[p.cell]
+
+
+def test_a_wiggle_of_one_gap_is_no_crossing_of_its_own():
+    ground = ridge({100: 3.0, 106: 3.0})
+    ground[102:105, 38:43] = 3.3  # 0.3 m between them: less than half a metre
+    assert len(passes_of(ground, ceiling=5.0)[0]) == 1
+    ground[102:105, 38:43] = 3.6
+    assert len(passes_of(ground, ceiling=5.0)[0]) == 2
+
+
+def test_ground_too_high_between_two_gaps_counts_by_its_height():
+    ground = ridge({100: 3.9, 106: 3.9})
+    ground[102:105, 38:43] = 4.2  # above the ceiling, yet only 0.3 m higher
+    assert len(passes_of(ground, ceiling=4.0)[0]) == 1
+    ground[102:105, 38:43] = 4.5
+    assert len(passes_of(ground, ceiling=4.0)[0]) == 2
+
+
+def test_much_length_parts_places_of_equal_height():
+    """A level plateau: the ends of a long ridge are joined by ever longer ways, so it is all one crossing."""
+    assert len(passes_of(ridge({}, height=2.0), ceiling=4.0)[0]) == 1
+
+
+def test_no_place_allowed_no_crossing():
+    assert passes_of(ridge({}), ceiling=4.0)[0] == []
+    assert distinct_passes(np.zeros((4, 4), bool), np.zeros((4, 4)), np.zeros((4, 4))) == []
+
+
+def test_paths_are_joined_where_they_do_not_meet_again():
+    one, other = np.array([[0, 0], [0, 1]]), np.array([[0, 1], [1, 1]])
+    assert join_paths(one, other).tolist() == [[0, 0], [0, 1], [1, 1]]
+    assert join_paths(one, np.array([[0, 1], [0, 0]])) is None
