@@ -47,15 +47,19 @@ class Stop:
 
 @dataclass(frozen=True, slots=True)
 class Call:
-    """What the program was called with; click hands it to every command."""
+    """What the program was called with; click hands it to every command.
+
+    ``program`` is what was typed before the arguments: another program may have this one among its commands.
+    """
 
     arguments: tuple[str, ...] = ()
     stop: Stop = field(default_factory=Stop)
+    program: str = "overcrest"
 
     @property
     def words(self) -> tuple[str, ...]:
         """The call, the program's name included."""
-        return ("overcrest", *self.arguments)
+        return (*self.program.split(), *self.arguments)
 
     def asks(self, *options: str) -> bool:
         """Return whether one of the options was typed; this works before, and without, a successful parse."""

@@ -15,20 +15,22 @@ from routing.commands.streams import emit_json, library_warnings, never_fail_on_
 from routing.errors import InputError, Interrupted, OvercrestError, Problem
 
 
-def main(argv: Sequence[str] | None = None) -> int:
+def main(argv: Sequence[str] | None = None, *, program: str = "overcrest") -> int:
     """Run the program and tell what went wrong, if anything did.
 
     Parameters
     ----------
     argv
         Arguments without the program's name; those of the process where left out.
+    program
+        What was typed before them, for help and messages.
 
     Returns
     -------
     int
         Exit code: 0 done, 2 bad input or usage, 3 no feasible route, 130 interrupted, 1 a fault of ours.
     """
-    call = Call(tuple(sys.argv[1:] if argv is None else argv))
+    call = Call(tuple(sys.argv[1:] if argv is None else argv), program=program)
     never_fail_on_characters()
     with listening_for_stops(call.stop), library_warnings(shown=call.asks("-v", "--verbose")):
         try:
@@ -72,14 +74,14 @@ def main_inner(argv: Sequence[str], call: Call | None = None) -> int:
     """
     call = Call(tuple(argv)) if call is None else call
     try:
-        with overcrest.make_context("overcrest", list(argv) or ["--help"], obj=call) as context:
+        with overcrest.make_context(call.program, list(argv) or ["--help"], obj=call) as context:
             code = overcrest.invoke(context)
     except click.exceptions.Exit as end:
         return end.exit_code
     except click.Abort as error:
         raise KeyboardInterrupt from error
     except click.ClickException as error:
-        raise _usage_error(error) from error
+        raise _usage_error(error, call.program) from error
     return int(code or EXIT_DONE)
 
 
@@ -104,11 +106,11 @@ def _stopped(call: Call, details: str = "") -> int:
     return _tell(Interrupted("stopped as asked; nothing half-written is left behind"), call, details)
 
 
-def _usage_error(error: click.ClickException) -> InputError:
+def _usage_error(error: click.ClickException, program: str) -> InputError:
     context = getattr(error, "ctx", None)
     parameter = getattr(error, "param", None)
-    remedy = "overcrest --help shows the commands"
-    allowed = f"overcrest {'|'.join(COMMANDS)} ..."
+    remedy = f"{program} --help shows the commands"
+    allowed = f"{program} {'|'.join(COMMANDS)} ..."
     if context is not None and context.parent is not None:
         remedy = f"{context.command_path} --help shows what the command takes"
         allowed = context.get_usage().removeprefix("Usage: ")
