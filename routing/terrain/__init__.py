@@ -18,6 +18,7 @@ from routing.terrain.shores import (
 )
 from routing.terrain.vectors import LayerAsk, read_geometries
 from routing.terrain.water import dry_cell, water_body, water_cells, with_voids_as_water
+from routing.terrain.zones import zone_map
 
 __all__ = [
     "Dem",
@@ -47,4 +48,5 @@ __all__ = [
     "water_cells",
     "with_voids_as_water",
     "xy_of",
+    "zone_map",
 ]

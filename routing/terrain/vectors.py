@@ -57,6 +57,29 @@ def read_geometries(ask: LayerAsk, crs: CRS) -> list[BaseGeometry]:
     TerrainError
         If the file or layer cannot be read, has no CRS, or cannot be moved to the one wanted.
     """
+    geometries, own = read_layer(ask)
+    return [_moved(one, Transformer.from_crs(own, crs, always_xy=True), ask) for one in geometries]
+
+
+def read_layer(ask: LayerAsk) -> tuple[list[BaseGeometry], CRS]:
+    """Read the geometries of one layer as they are, heights dropped, with the layer's CRS.
+
+    Parameters
+    ----------
+    ask
+        File and layer; the layer may be left out where the file has only one.
+
+    Returns
+    -------
+    list of shapely geometry
+        Empty and missing geometries left out.
+    CRS
+
+    Raises
+    ------
+    TerrainError
+        If the file or layer cannot be read, or has no CRS.
+    """
     # Imported here: pyogrio may load geopandas and pandas, and most sites need no vector file.
     import pyogrio  # noqa: PLC0415
     import pyogrio.raw  # noqa: PLC0415
@@ -80,7 +103,7 @@ def read_geometries(ask: LayerAsk, crs: CRS) -> list[BaseGeometry]:
             remedy="export it again as GeoJSON or GeoPackage",
         ) from error
     geometries = [one for one in shapely.from_wkb(shapes) if one is not None and not one.is_empty]
-    return [_moved(one, _transformer(ask, meta, crs), ask) for one in geometries]
+    return geometries, _own_crs(ask, meta)
 
 
 def _layer_name(ask: LayerAsk, names: list[str]) -> str:
@@ -101,9 +124,9 @@ def _layer_name(ask: LayerAsk, names: list[str]) -> str:
     return names[0] if ask.layer is None else ask.layer
 
 
-def _transformer(ask: LayerAsk, meta: dict[str, Any], crs: CRS) -> Transformer:
+def _own_crs(ask: LayerAsk, meta: dict[str, Any]) -> CRS:
     try:
-        own = CRS.from_user_input(meta["crs"])
+        return CRS.from_user_input(meta["crs"])
     except CRSError as error:
         raise ask.error(
             f"The file {ask.file} does not say which coordinate system it is in.",
@@ -111,16 +134,28 @@ def _transformer(ask: LayerAsk, meta: dict[str, Any], crs: CRS) -> Transformer:
             allowed="a layer with a CRS (GeoJSON: WGS 84 longitude and latitude)",
             remedy="export the layer again with its CRS",
         ) from error
-    return Transformer.from_crs(own, crs, always_xy=True)
 
 
 def _moved(geometry: BaseGeometry, transformer: Transformer, ask: LayerAsk) -> BaseGeometry:
     moved = shapely.transform(geometry, lambda xy: np.column_stack(transformer.transform(xy[:, 0], xy[:, 1])))
     if not np.isfinite(shapely.get_coordinates(moved)).all():
-        raise ask.error(
-            f"A feature of {ask.file} lies where the DEM's CRS has no coordinates.",
-            found=f"bounds {tuple(geometry.bounds)}",
-            allowed="features near the DEM",
-            remedy="check the CRS of the layer, and that longitude stands before latitude",
-        )
+        raise out_of_reach(geometry, ask)
     return moved
+
+
+def out_of_reach(geometry: BaseGeometry, ask: LayerAsk) -> TerrainError:
+    """Return the error for a feature that has no place in the DEM's CRS.
+
+    Parameters
+    ----------
+    geometry
+        The feature in the layer's own CRS.
+    ask
+        The layer.
+    """
+    return ask.error(
+        f"A feature of {ask.file} lies where the DEM's CRS has no coordinates.",
+        found=f"bounds {tuple(geometry.bounds)}",
+        allowed="features near the DEM",
+        remedy="check the CRS of the layer, and that longitude stands before latitude",
+    )
