@@ -15,7 +15,7 @@ from numpy.typing import NDArray
 
 from routing.records import BoolArray
 from routing.search.grid import Grid
-from routing.search.paths import PathEdges, may_escape, path_edges
+from routing.search.paths import PathEdges, may_escape, path_edges, raise_needed
 from routing.search.reaching import CellLike, Limitation, Reach, Tick, search_grid
 from routing.search.widest import bound_by_cells, compact, spread
 
@@ -73,6 +73,9 @@ class Found:
         Whether no path through ground outside the window could do better.
     searches
         Searches run.
+    shortest
+        For a largest discharge: the shortest of all paths that allow any flow, proven outside as ``shortest_proven``
+        says.
     """
 
     path: PathEdges | None
@@ -80,17 +83,25 @@ class Found:
     high: float
     proven_outside: bool
     searches: int
+    shortest: PathEdges | None = None
+    shortest_proven: bool = False
 
 
 @dataclass(frozen=True, slots=True)
 class _Bracket:
-    """The best path so far, what it carries, what no path can exceed, and whether that holds outside the window."""
+    """The best path so far, what it carries, what no path can exceed, and whether that holds outside the window.
+
+    ``shortest`` is the shortest path under the ceiling of still water, and ``shortest_proven`` whether none outside is
+    shorter.
+    """
 
     path: PathEdges | None
     low: float
     high: float
     proven: bool
     searches: int
+    shortest: PathEdges | None = None
+    shortest_proven: bool = False
 
     def closed(self, tolerance: float) -> bool:
         return self.high <= self.low * (1.0 + tolerance)
@@ -140,16 +151,16 @@ def _first_bracket(job: Job, flow: Flow) -> _Bracket:
     if not np.isfinite(length):
         return _Bracket(None, 0.0, 0.0, proven, 1)
     path, low = _carried(job, flow, forward.path_to(*job.goal), still)
-    bracket = _Bracket(path, low, max(low, flow.carried_at_length(length)), proven, 1)
+    bracket = _Bracket(path, low, max(low, flow.carried_at_length(length)), proven, 1, path, proven)
     if bracket.closed(_COARSE):
         return bracket
     forward = compact(forward)
-    backward = compact(search_grid(job.grid, [job.goal], replace(still, along=False), tick=job.tick))
+    level = replace(still, ceiling_gradient=0.0)  # a ceiling that falls on the way out would rise on the way back
+    backward = compact(search_grid(job.grid, [job.goal], level, tick=job.tick))
     bracket = replace(bracket, searches=2)
     figures = spread(bracket.low, bracket.high)
-    bound = bound_by_cells(
-        job.grid, (job.source, job.goal), (forward, backward), [flow.limit_at(figure) for figure in figures], figures
-    )
+    limits = [flow.limit_at(figure) for figure in figures]
+    bound = bound_by_cells(job.grid, (job.source, job.goal), (forward, backward), limits, figures, job.tick)
     if bound.way is not None:
         bracket = bracket.with_path(*_carried(job, flow, bound.way, still))
     if bound.high >= bracket.high:
@@ -174,7 +185,7 @@ def largest_discharge(job: Job, flow: Flow, *, tolerance: float = 1e-3) -> Found
         still water finds no path, ``path`` is ``None`` and both are 0.
     """
     bracket = _first_bracket(job, flow)
-    nothing = _NO_FLOW * bracket.high
+    nothing = 0.0 if bracket.shortest is None else _NO_FLOW * flow.carried_at_length(bracket.shortest.length_m)
     ask_for_better = bracket.low > 0.0
     while not bracket.closed(tolerance) and bracket.high > nothing:
         low, high = bracket.low, bracket.high
@@ -192,18 +203,16 @@ def largest_discharge(job: Job, flow: Flow, *, tolerance: float = 1e-3) -> Found
         if at_length < bracket.high:
             bracket = bracket.below(at_length, proven=outside)
         ask_for_better = not ask_for_better
-    if bracket.path is not None and not bracket.proven:  # the ceiling itself may close the ways out of the window
-        path, outside = _probe(job, flow.limit_at(bracket.high * (1.0 + tolerance)))
-        proven = path is None and outside
-        bracket = replace(bracket, searches=bracket.searches + 1, proven=proven)
-    return Found(bracket.path, bracket.low, max(bracket.low, bracket.high), bracket.proven, bracket.searches)
-
-
-def _raise_of(path: PathEdges, limitation: Limitation) -> float:
-    """How far the ceiling must be raised for a path."""
-    falling = limitation.ceiling_level_m - limitation.ceiling_gradient * path.at_length_m
-    top = np.minimum(falling, limitation.cap_level_m)
-    return float(np.max(path.at_level_m - top))
+    above = bracket.low * (1.0 + tolerance)
+    if not bracket.proven and above > bracket.high:  # the ceiling of a little more may close the ways out of the window
+        path, outside = _probe(job, flow.limit_at(above))
+        bracket = replace(bracket, searches=bracket.searches + 1)
+        if path is None and outside:
+            bracket = bracket.below(above, proven=True)
+    high = max(bracket.low, bracket.high)
+    return Found(
+        bracket.path, bracket.low, high, bracket.proven, bracket.searches, bracket.shortest, bracket.shortest_proven
+    )
 
 
 def least_raise(job: Job, limitation: Limitation, *, tolerance_m: float = 0.002) -> Found:
@@ -212,16 +221,16 @@ def least_raise(job: Job, limitation: Limitation, *, tolerance_m: float = 0.002)
     Returns
     -------
     Found
-        ``high`` is the raise (in m) that the path needs, ``low`` a raise below which there is no path. ``path``
-        is ``None`` where no raise helps: no way joins the ends within ``longest_m``.
+        ``high`` is the raise (in m) that the path needs, 0 where it needs none; ``low`` a raise below which there is
+        no path. ``path`` is ``None`` where no raise helps: no way joins the ends within ``longest_m``.
     """
     open_sky = replace(limitation, ceiling_level_m=np.inf, ceiling_gradient=0.0, cap_level_m=np.inf)
-    best, proven = _probe(job, open_sky)
+    best, outside = _probe(job, open_sky)
     searches = 1
     if best is None:
-        return Found(None, np.inf, np.inf, proven, searches)
-    high = _raise_of(best, limitation)
-    low = min(0.0, high)
+        return Found(None, np.inf, np.inf, outside, searches)
+    high = raise_needed(job.grid, best.cells, limitation)
+    low, proven = 0.0, True  # nothing needs less than none
     ask_for_better = False
     while high - low > tolerance_m:
         lift = high - tolerance_m if ask_for_better else 0.5 * (low + high)
@@ -231,6 +240,7 @@ def least_raise(job: Job, limitation: Limitation, *, tolerance_m: float = 0.002)
             low, proven = lift, outside
             ask_for_better = False
         else:
-            best, high = path, min(lift, _raise_of(path, limitation))  # no more than it was let through at
+            # No more than it was let through at, whatever rounding says.
+            best, high = path, min(lift, raise_needed(job.grid, path.cells, limitation))
             ask_for_better = not ask_for_better
     return Found(best, low, high, proven, searches)

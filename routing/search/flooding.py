@@ -10,6 +10,7 @@ with those eight moves is exact for the surface.
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from typing import NamedTuple
 
 import numpy as np
@@ -30,6 +31,9 @@ HEAP_SMALL = 2
 GOAL_MET = 3
 
 NO_RATING = 255
+
+#: Cells taken between two moments at which the caller may show progress or stop.
+SLICE_CELLS = 200_000
 
 WAITING, GOAL_CELL, COUNT = range(3)
 STATE_SIZE = 3
@@ -158,11 +162,14 @@ def rate_cells(
     """Give each cell the largest step of a table that it allows, or ``NO_RATING``.
 
     ``steps`` is (n, 4): ceiling level, gradient, cap, longest length, falling from step to step. A cell allows a step
-    if its ground is under the ceiling at the length ``before`` it, and the way through it is not too long.
+    if its ground is under the ceiling at the length ``before`` it, and the way through it is not too long. One that
+    was not reached from both ends allows none.
     """
     for cell in range(level.size):
         low, high = -1, steps.shape[0] - 1  # the answer is in low..high
-        whole = before[cell] + after[cell]
+        whole = np.float64(before[cell]) + np.float64(after[cell])  # summed in float32 it might be rounded up
+        if not whole < np.inf:
+            high = -1
         while low < high:
             middle = (low + high + 1) >> 1
             top = min(steps[middle, 0] - steps[middle, 1] * before[cell], steps[middle, 2])
@@ -173,31 +180,40 @@ def rate_cells(
         rating[cell] = NO_RATING if low < 0 else low
 
 
-@njit(cache=True)
-def widest_way(
-    rating: NDArray[np.uint8], drow: NDArray[np.intp], dcol: NDArray[np.intp], cols: int, source: int, goal: int
-) -> tuple[int, int]:
-    """Find the way whose least rating is largest; return that rating and its narrowest cell (-1, -1 for none).
+class Lists(NamedTuple):
+    """Cells that wait for the widest way: one linked list a rating, and the narrowest cell on the way to each."""
 
-    Cells without a rating are not entered. Cells wait in one list a rating and the
-    best list is drained first, so each cell is looked at once.
+    head: NDArray[np.int32]
+    after: NDArray[np.int32]
+    neck: NDArray[np.int32]  # -1: not met yet
+
+
+@njit(cache=True)
+def widen(  # noqa: PLR0913, PLR0917 - numba: plain arrays
+    rating: NDArray[np.uint8],
+    drow: NDArray[np.intp],
+    dcol: NDArray[np.intp],
+    cols: int,
+    goal: int,
+    lists: Lists,
+    at: int,
+    budget: int,
+) -> int:
+    """Take at most ``budget`` cells, widest first, from rating ``at`` on; return the rating at which it stopped.
+
+    It is -1 where no cell waits any more. When the goal is next, it stays first in its list.
     """
-    head = np.full(256, -1, dtype=np.int32)
-    after = np.empty(rating.size, dtype=np.int32)
-    neck = np.full(rating.size, -1, dtype=np.int32)
+    head, after, neck = lists.head, lists.after, lists.neck
     rows = rating.size // cols
-    if rating[source] == NO_RATING:
-        return -1, -1
-    at = int(rating[source])
-    head[at], after[source], neck[source] = source, -1, source
-    while at >= 0:
+    while at >= 0 and budget > 0:
         cell = head[at]
         if cell < 0:
             at -= 1
             continue
-        head[at] = after[cell]
         if cell == goal:
-            return at, neck[cell]
+            return at
+        head[at] = after[cell]
+        budget -= 1
         row = cell // cols
         col = cell - row * cols
         for move in range(drow.size):
@@ -211,4 +227,38 @@ def widest_way(
             neck[to] = to if slot < at else neck[cell]
             after[to] = head[slot]
             head[slot] = to
-    return -1, -1
+    return at
+
+
+def widest_way(
+    rating: NDArray[np.uint8],
+    drow: NDArray[np.intp],
+    dcol: NDArray[np.intp],
+    cols: int,
+    source: int,
+    goal: int,
+    tick: Callable[[int], None] | None = None,
+) -> tuple[int, int]:
+    """Find the way whose least rating is largest; return that rating and its narrowest cell (-1, -1 for none).
+
+    Cells without a rating are not entered. Cells wait in one list a rating and the best list is drained first, so each
+    cell is looked at once. ``tick`` is called between slices with the number of cells taken; it may raise.
+    """
+    if rating[source] == NO_RATING:
+        return -1, -1
+    lists = Lists(
+        head=np.full(256, -1, dtype=np.int32),
+        after=np.empty(rating.size, dtype=np.int32),
+        neck=np.full(rating.size, -1, dtype=np.int32),
+    )
+    at, taken = int(rating[source]), 0
+    lists.head[at], lists.after[source], lists.neck[source] = source, -1, source
+    while True:
+        at = int(widen(rating, drow, dcol, cols, goal, lists, at, SLICE_CELLS))
+        if at < 0:
+            return -1, -1
+        if lists.head[at] == goal:
+            return at, int(lists.neck[goal])
+        taken += SLICE_CELLS
+        if tick is not None:
+            tick(taken)

@@ -372,3 +372,16 @@ def path_highs(
         else:
             highest[i] = crossed_high(ground, moves, row, col, taken[i])
     return highest
+
+
+@njit(cache=True)
+def path_tilted_highs(
+    ground: Ground, moves: Moves, cells: NDArray[np.intp], taken: NDArray[np.intp], tilts: NDArray[np.float64]
+) -> NDArray[np.float64]:
+    """Highest bilinear ground along each edge of a path, lowered towards its start by its tilt (see `edge_high`)."""
+    highest = np.empty(taken.size)
+    for i in range(taken.size):
+        row = cells[i] // ground.cols
+        col = cells[i] - row * ground.cols
+        highest[i] = edge_high(ground, moves, row, col, taken[i], tilts[i])
+    return highest

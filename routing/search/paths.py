@@ -5,7 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 import numpy as np
-from numpy.typing import NDArray
+from numpy.typing import ArrayLike, NDArray
 
 from routing.errors import InputError, Problem
 from routing.records import BoolArray, FloatArray
@@ -31,12 +31,15 @@ class PathEdges:
         What the ceiling must clear: ground levels and the lengths that they count at. By the far-end rule, the
         start and then the highest ground of each edge at the length of its far end; by the rule along the edge, the
         ground at 24 places of each and at its highest.
+    start_length_m
+        Length already behind the first cell; it is part of all lengths here.
     """
 
     cells: NDArray[np.intp]
     length_m: float
     at_length_m: FloatArray
     at_level_m: FloatArray
+    start_length_m: float = 0.0
 
 
 def _moves_of(grid: Grid, cells: NDArray[np.intp]) -> NDArray[np.intp]:
@@ -50,6 +53,14 @@ def _moves_of(grid: Grid, cells: NDArray[np.intp]) -> NDArray[np.intp]:
                 "two cells of the path are not one move apart", found=f"{error}", allowed=f"{grid.neighbours} moves"
             )
         ) from error
+
+
+def _edges_of(grid: Grid, cells: NDArray[np.intp]) -> tuple[NDArray[np.intp], NDArray[np.intp], FloatArray]:
+    """Return the moves of a path, its cells as flat numbers, and the 3-D lengths of its edges."""
+    taken = _moves_of(grid, cells)
+    flat = (cells[:, 0] * grid.ground.cols + cells[:, 1]).astype(np.intp)
+    rise = np.diff(grid.ground.level[flat])
+    return taken, flat, np.hypot(grid.ground.plan[cells[:-1, 0], taken], rise)
 
 
 def _ground_at(grid: Grid, row: FloatArray, col: FloatArray) -> FloatArray:
@@ -86,10 +97,8 @@ def path_edges(grid: Grid, cells: NDArray[np.intp], limitation: Limitation, star
     InputError
         If two successive cells are not joined by a move of the grid.
     """
-    taken = _moves_of(grid, cells)
-    flat = (cells[:, 0] * grid.ground.cols + cells[:, 1]).astype(np.intp)
+    taken, flat, edge = _edges_of(grid, cells)
     level = grid.ground.level[flat]
-    edge = np.hypot(grid.ground.plan[cells[:-1, 0], taken], np.diff(level))
     far = start_length_m + np.concatenate([[0.0], np.cumsum(edge)])
     if limitation.rule == "bilinear" and limitation.along:
         row = cells[:-1, 0:1] + np.diff(cells[:, 0:1], axis=0) * _SHARES
@@ -106,7 +115,30 @@ def path_edges(grid: Grid, cells: NDArray[np.intp], limitation: Limitation, star
         float(far[-1]),
         np.concatenate([far[:1], at_length]),
         np.concatenate([level[:1], at_level]),
+        start_length_m,
     )
+
+
+def raise_needed(grid: Grid, cells: NDArray[np.intp], limitation: Limitation) -> float:
+    """Return how far ceiling and cap of a limitation must be raised for a path, in m: 0 where it keeps to them.
+
+    Exact: each edge by its own highest place under the falling ceiling, not by samples.
+
+    Raises
+    ------
+    InputError
+        If two successive cells are not joined by a move of the grid.
+    """
+    taken, flat, edge = _edges_of(grid, cells)
+    falling = limitation.ceiling_level_m - limitation.ceiling_gradient * np.cumsum(edge)
+    bilinear = limitation.rule == "bilinear"
+    high = held = kernel.path_highs(grid.ground, grid.moves, bilinear, flat[:-1], taken)
+    if bilinear and limitation.along:
+        tilts = limitation.ceiling_gradient * edge
+        held = kernel.path_tilted_highs(grid.ground, grid.moves, flat[:-1], taken, tilts)
+    start = grid.ground.level[flat[0]] - min(limitation.ceiling_level_m, limitation.cap_level_m)
+    over = np.maximum(held - falling, high - limitation.cap_level_m)
+    return float(max(start, over.max(initial=0.0), 0.0))
 
 
 def border_band(grid: Grid, open_sides: tuple[bool, bool, bool, bool]) -> BoolArray:
@@ -121,17 +153,22 @@ def border_band(grid: Grid, open_sides: tuple[bool, bool, bool, bool]) -> BoolAr
     return band
 
 
-def may_escape(grid: Grid, found: Reach, band: BoolArray, goal: tuple[int, int], longest_m: float) -> bool:
+def may_escape(grid: Grid, found: Reach, band: BoolArray, goals: ArrayLike, longest_m: float) -> bool:
     """Whether a path through ground outside the window might be shorter than ``longest_m``.
 
     Such a path leaves over a band cell, so it is at least as long as the length to that cell plus the straight
-    distance from there to the goal.
+    distance from there to the goal. ``goals`` is a cell or a (m, 2) array of cells; of several, the nearest side of
+    the box round them counts.
     """
     cells = np.argwhere(band & np.isfinite(found.length_m))
     if cells.size == 0:
         return False
-    across = (goal[1] - cells[:, 1]) * grid.step_x_m.min()
-    down = (goal[0] - cells[:, 0]) * grid.step_y_m.min()
-    up = grid.level[goal] - grid.level[cells[:, 0], cells[:, 1]]
+    goals = np.atleast_2d(np.asarray(goals, dtype=np.intp))
+    first, last = goals.min(axis=0), goals.max(axis=0)
+    outside = np.maximum(np.maximum(first - cells, cells - last), 0)
+    across, down = outside[:, 1] * grid.step_x_m.min(), outside[:, 0] * grid.step_y_m.min()
+    levels = grid.level[goals[:, 0], goals[:, 1]]
+    here = grid.level[cells[:, 0], cells[:, 1]]
+    up = np.maximum(np.maximum(levels.min() - here, here - levels.max()), 0.0)
     least = found.length_m[cells[:, 0], cells[:, 1]] + np.sqrt(across**2 + down**2 + up**2)
     return bool(np.any(least < longest_m * (1.0 - 1e-12)))

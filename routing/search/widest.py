@@ -15,7 +15,7 @@ from numpy.typing import NDArray
 
 from routing.search import flooding
 from routing.search.grid import Grid
-from routing.search.reaching import CellLike, Limitation, Reach
+from routing.search.reaching import CellLike, Limitation, Reach, Tick
 
 # Discharges between the best known and the bound at hand: fine enough to leave one or two probes.
 _STEPS = 250
@@ -49,6 +49,7 @@ def bound_by_cells(
     ways: tuple[Reach, Reach],
     limits: list[Limitation],
     figures: list[float],
+    tick: Tick | None = None,
 ) -> Bound:
     """Bound the discharge of every path by the cells it must pass.
 
@@ -62,16 +63,22 @@ def bound_by_cells(
         Shortest lengths from the source and from the goal, under limits that every path keeps to (see `compact`).
     limits, figures
         Limitations of rising discharges, and those discharges; the last one is known to be a bound.
+    tick
+        Called between slices with the number of cells done; may raise to stop.
     """
     steps = np.array([[it.ceiling_level_m, it.ceiling_gradient, it.cap_level_m, it.longest_m] for it in limits])
     rating = np.empty(grid.flags.size, dtype=np.uint8)
     forward, backward = ways
     before, after = (np.asarray(way.length_m, dtype=np.float32).ravel() for way in ways)
-    flooding.rate_cells(grid.ground.level, before, after, steps, rating)
+    for start in range(0, rating.size, flooding.SLICE_CELLS):
+        part = slice(start, start + flooding.SLICE_CELLS)
+        flooding.rate_cells(grid.ground.level[part], before[part], after[part], steps, rating[part])
+        if tick is not None:
+            tick(start)
     rating[~grid.has_ground.ravel()] = flooding.NO_RATING
     cols = grid.ground.cols
     source, goal = (row * cols + col for row, col in ends)
-    at, neck = flooding.widest_way(rating, grid.moves.drow, grid.moves.dcol, cols, source, goal)
+    at, neck = flooding.widest_way(rating, grid.moves.drow, grid.moves.dcol, cols, source, goal, tick)
     if at < 0:
         return Bound(figures[0], None)
     place = divmod(int(neck), cols)
