@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterator
 from dataclasses import dataclass, replace
 
@@ -74,21 +75,31 @@ def _words(pipe: Pipe, duty: float | None) -> str:
     return f"{pipe.name}" if duty is None else f"{pipe.name} at {duty * 1e3:.1f} l/s in each"
 
 
-def _ways(need_m: float, limitation: Limitation, reserve_m: float) -> str:
-    """Say what would lift the ceiling by as much as is needed: only what a site file may set."""
-    if need_m > DEEPEST_TRENCH_M:
-        return "What would help: another outlet or intake, with lower ground between; no trench or level makes up this"
-    ways = f"a trench {need_m:.2f} m deep where the ground is too high, or a lowest level {need_m:.2f} m higher"
+def _told_m(need_m: float) -> float:
+    """Round a raise up to whole centimetres: what is told to help must help."""
+    return math.ceil(need_m * 100.0 - _HAIR * 100.0) / 100.0
+
+
+def _ways(bench: Bench, need_m: float, limitation: Limitation) -> str:
+    """Say what would lift the ceiling by as much as is needed: only what the site file may still set."""
+    setting, bed_m = bench.setting, bench.site.search.bed_offset_m
+    trench = f"a trench {need_m:.2f} m deep" if bed_m == 0.0 else f"the pipe laid {need_m:.2f} m lower"
+    ways = [
+        (DEEPEST_TRENCH_M + bed_m, f"{trench} where the ground is too high"),
+        (setting.present.water_m - setting.lowest.water_m, f"a lowest level {need_m:.2f} m higher"),
+    ]
     capped = limitation.ceiling_level_m - limitation.cap_level_m  # how far the highest lift lies under the suction
     if capped > 0.0:
-        way, room_m = "a highest lift (limits.highest_lift_m) {:.2f} m higher", capped
+        ways.append((capped, f"a highest lift (limits.highest_lift_m) {need_m:.2f} m higher"))
     else:
-        way, room_m = "a reserve {:.2f} m smaller", reserve_m
-    third = f", or {way.format(need_m)}" if need_m <= room_m else ""
-    return f"What would make a route: {ways}{third}"
+        ways.append((setting.limits.reserve_m, f"a reserve {need_m:.2f} m smaller"))
+    open_ways = [text for room_m, text in ways if need_m <= room_m + _HAIR]
+    if not open_ways:
+        return "What would help: another outlet or intake, with lower ground between; no trench or level makes up this"
+    return f"What would make a route: {', or '.join(open_ways)}"
 
 
-def _shortfall(pipe: Pipe, duty: float | None, raised: Found, limitation: Limitation, reserve_m: float) -> Shortfall:
+def _shortfall(bench: Bench, pipe: Pipe, duty: float | None, raised: Found, limitation: Limitation) -> Shortfall:
     """Say what would make a route that keeps the suction limit."""
     if raised.path is None:
         text = (
@@ -101,9 +112,8 @@ def _shortfall(pipe: Pipe, duty: float | None, raised: Found, limitation: Limita
         need = 0.01
     capped = limitation.cap_level_m < limitation.ceiling_level_m
     limit = "the highest lift allowed" if capped else "the suction limit"
-    text = (
-        f"{_words(pipe, duty)}: the ground is {need:.2f} m too high for {limit}. {_ways(need, limitation, reserve_m)}."
-    )
+    told = _told_m(need)
+    text = f"{_words(pipe, duty)}: the ground is {told:.2f} m too high for {limit}. {_ways(bench, told, limitation)}."
     return Shortfall(pipe.name, duty, "suction", need, text)
 
 
@@ -115,6 +125,12 @@ def _too_weak(pipe: Pipe, duty: float, most: float) -> Shortfall:
     return Shortfall(pipe.name, duty, "energy", None, text)
 
 
+def _most_driven(bench: Bench, pipe: Pipe, known: PathEdges) -> float:
+    """Return what the fall drives by any route: through the shortest way over the ground, however high it is."""
+    free = shortest_path(bench.job, Limitation(rule=bench.site.search.ground_rule)).path
+    return bench.flow(pipe).carried_at_length(min(known.length_m, np.inf if free is None else free.length_m))
+
+
 def _least_bad(bench: Bench, pipe: Pipe, best: Found, count: int, duty: float | None) -> Offer:
     """Offer the route that is nearest to working, and say what is missing."""
     limitation: Limitation = bench.limit_at(pipe, duty or 0.0)
@@ -124,23 +140,22 @@ def _least_bad(bench: Bench, pipe: Pipe, best: Found, count: int, duty: float | 
         if reachable
         else Found(None, np.inf, np.inf, proven_outside=True, searches=0)
     )
-    reserve = bench.setting.limits.reserve_m
     if raised.path is not None:
         figures = replace(best, proven_outside=raised.proven_outside)
         candidate = _candidate(bench, pipe, raised.path, figures, count, duty)
-        return Offer((candidate,), _shortfall(pipe, duty, raised, limitation, reserve), raised.proven_outside)
+        return Offer((candidate,), _shortfall(bench, pipe, duty, raised, limitation), raised.proven_outside)
     if duty is not None:  # more than the fall drives at any length: look at still water instead
         still = best if best.path is not None else least_raise(bench.job, bench.limit_at(pipe, 0.0))
         if still.path is not None:
-            most = bench.flow(pipe).carried_at_length(still.path.length_m)
+            most = _most_driven(bench, pipe, still.path)
             figures = replace(best, proven_outside=still.proven_outside)
             candidate = _candidate(bench, pipe, still.path, figures, count, duty)
             shortfall = _too_weak(pipe, duty, most)
             if best.path is None:
-                shortfall = _shortfall(pipe, duty, still, limitation, reserve)
+                shortfall = _shortfall(bench, pipe, duty, still, limitation)
                 shortfall = replace(shortfall, text=_both(pipe, duty, still, most))
             return Offer((candidate,), shortfall, still.proven_outside)
-    return Offer((), _shortfall(pipe, duty, raised, limitation, reserve), raised.proven_outside)
+    return Offer((), _shortfall(bench, pipe, duty, raised, limitation), raised.proven_outside)
 
 
 def _both(pipe: Pipe, duty: float, still: Found, most: float) -> str:
