@@ -25,8 +25,8 @@ def list_assumptions(model: SiteModel, pipes: tuple[Pipe, ...]) -> tuple[str, ..
     tuple of str
         One sentence each.
     """
-    parts = (_terrain(model), _air(model.air), _water(model.water), _outlet(model), _losses(model.losses))
-    rest = (_limits(model.limits), _prices(model), _pipes(model, pipes))
+    parts = (_terrain(model), _air(model.air), _water(model.water), _intake(model), _outlet(model))
+    rest = (_losses(model.losses), _limits(model.limits), _prices(model), _pipes(model, pipes), _zones(model))
     return tuple(sentence for part in (*parts, *rest) for sentence in part)
 
 
@@ -53,6 +53,19 @@ def _water(water: WaterModel) -> Iterator[str]:
         yield "The present water level is read off the DEM at the intake (water.present_level_m)."
     if "temperature_c" not in water.model_fields_set:
         yield f"The water is taken to be at {number_text(water.temperature_c)} °C (water.temperature_c)."
+
+
+def _intake(model: SiteModel) -> Iterator[str]:
+    intake = model.intake
+    if intake.kind == "point":
+        return
+    if model.terrain.water_shown == "surface":
+        yield "The shore of the water that the DEM shows stands for the shore at the lowest level (intake.kind)."
+    if intake.underwater_length_m is not None and intake.mouth_level_m is None:
+        yield (
+            "The pipe's crown at the intake mouth is taken to lie one outside diameter below the lowest level "
+            "(intake.mouth_level_m)."
+        )
 
 
 def _outlet(model: SiteModel) -> Iterator[str]:
@@ -100,6 +113,17 @@ def _prices(model: SiteModel) -> Iterator[str]:
         without = [str(number) for number, pipe in enumerate(model.pipes, start=1) if getattr(pipe, name) is None]
         if without:
             yield f"pipes {', '.join(without)}: {name} is not given and counts as 0."
+
+
+def _zones(model: SiteModel) -> Iterator[str]:
+    barred = [f"zones {number}" for number, zone in enumerate(model.zones, start=1) if zone.kind == "barred"]
+    if barred:
+        yield f"{', '.join(barred)}: barred as drawn, with no distance kept from the edge (zones.file)."
+    if any(zone.kind == "cost" for zone in model.zones):
+        if not any(pipe.laying_per_m for pipe in model.pipes):
+            yield "No pipe has a price of laying, so cost zones change nothing (pipes.laying_per_m)."
+        else:
+            yield "A cost zone multiplies the price of laying there, not that of the pipe (zones.cost_factor)."
 
 
 def _pipes(model: SiteModel, pipes: tuple[Pipe, ...]) -> Iterator[str]:

@@ -5,10 +5,12 @@ from __future__ import annotations
 import difflib
 from pathlib import Path
 
+from routing.site.choices import check_choices, has_point
 from routing.site.draft import Draft
 from routing.site.fields import number_text, value_text
 from routing.site.ledger import Ledger
 from routing.site.points import check_ends, check_point
+from routing.site.zones import check_zones
 
 _FILE_KEYS = ("terrain.file", "water.polygon_file", "intake.file", "outlet.file")
 _PRICE_KEYS = ("supply_per_m", "laying_per_m", "fixed_each")
@@ -24,17 +26,19 @@ def check_across(draft: Draft, ledger: Ledger) -> None:
     ledger
         Takes the problems.
     """
-    for key in _FILE_KEYS:
+    for key in (*_FILE_KEYS, *(f"{zone}.file" for zone in draft.zones())):
         _check_file(key, draft, ledger)
     for section in ("intake", "outlet"):
-        if section in draft.sections:
+        if section in draft.sections and has_point(section, draft):
             check_point(section, draft, ledger)
     check_ends(draft, ledger)
+    check_choices(draft, ledger)
     _check_air(draft, ledger)
     _check_water(draft, ledger)
     _check_mouth(draft, ledger)
     _check_outlet(draft, ledger)
     _check_prices(draft, ledger)
+    check_zones(draft, ledger)
 
 
 def _metres(value: float) -> str:
@@ -111,7 +115,8 @@ def _check_mouth(draft: Draft, ledger: Ledger) -> None:
     mouth, lowest = draft.number(key), draft.number("water.lowest_level_m")
     depth = draft.number("limits.least_submergence_m")
     if mouth is None:
-        if draft.text("terrain.water_shown") == "surface" and "terrain" in draft.sections:
+        at_point = draft.text("intake.kind") == "point"
+        if at_point and draft.text("terrain.water_shown") == "surface" and "terrain" in draft.sections:
             ledger.add(
                 key,
                 "the level of the intake mouth is not given, and the DEM shows the water's surface, not its bed",

@@ -10,7 +10,7 @@ from pathlib import Path
 from typing import Any
 
 from routing.site.fields import default_of
-from routing.site.models import SECTIONS, SiteModel
+from routing.site.models import REPEATED, SECTIONS, SiteModel
 
 
 class Draft:
@@ -33,7 +33,7 @@ class Draft:
         self.sections: list[str] = []
         for section, model in SECTIONS.items():
             tables = _tables(section, raw.get(section))
-            if section not in raw and not SiteModel.model_fields[section].is_required():
+            if section not in raw and section not in REPEATED and not SiteModel.model_fields[section].is_required():
                 tables = {section: {}}
             for prefix, table in tables.items():
                 self.sections.append(prefix)
@@ -67,12 +67,19 @@ class Draft:
 
     def pipes(self) -> list[str]:
         """Return the dotted prefixes of the pipes, ``pipes[1]`` first."""
-        return [prefix for prefix in self.sections if prefix.startswith("pipes[")]
+        return self._entries("pipes")
+
+    def zones(self) -> list[str]:
+        """Return the dotted prefixes of the zones, ``zones[1]`` first."""
+        return self._entries("zones")
+
+    def _entries(self, section: str) -> list[str]:
+        return [prefix for prefix in self.sections if prefix.startswith(f"{section}[")]
 
 
 def _tables(section: str, raw: Any) -> dict[str, Mapping[str, Any]]:
     """Return the tables of a section by dotted prefix; nothing where they are no tables."""
-    if section != "pipes":
+    if section not in REPEATED:
         return {section: raw} if isinstance(raw, Mapping) else {}
     entries = raw if isinstance(raw, list) else []
-    return {f"pipes[{n}]": entry for n, entry in enumerate(entries, start=1) if isinstance(entry, Mapping)}
+    return {f"{section}[{n}]": entry for n, entry in enumerate(entries, start=1) if isinstance(entry, Mapping)}

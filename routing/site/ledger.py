@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from routing.errors import Problem, SiteError
 from routing.site.lines import LineMap
+from routing.site.models import REPEATED, heading
 
 
 class Ledger:
@@ -46,7 +47,7 @@ class Ledger:
         if line is not None:
             return f"take away the '#' in line {line} and write your own value after '{name} ='"
         section = key.rpartition(".")[0].partition("[")[0]
-        place = f"in [[{section}]]" if section == "pipes" else f"under [{section}]"
+        place = f"in {heading(section)}" if section in REPEATED else f"under {heading(section)}"
         return f"add '{name} = {example}' {place}"
 
     def close(self) -> None:

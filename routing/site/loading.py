@@ -23,6 +23,7 @@ from routing.records import (
     Site,
     TerrainAsk,
     WaterAsk,
+    ZoneAsk,
 )
 from routing.site.assumptions import list_assumptions
 from routing.site.checks import check_across
@@ -106,7 +107,7 @@ def _to_site(file: Path, model: SiteModel, pipes: tuple[Pipe, ...], read: SiteTe
         title=model.title or folder.name or file.stem,
         terrain=_terrain(model, folder),
         water=_water(model, folder),
-        intake=IntakeAsk(_point("intake", model.intake, folder, lines), model.intake.mouth_level_m),
+        intake=_intake(model, folder, lines),
         outlet=_outlet(model, folder, lines),
         pipes=pipes,
         air=AirAsk(**model.air.model_dump()),
@@ -116,6 +117,7 @@ def _to_site(file: Path, model: SiteModel, pipes: tuple[Pipe, ...], read: SiteTe
         prices=PriceList(**model.prices.model_dump()),
         search=SearchAsk(**model.search.model_dump()),
         lines=dict(lines.keys),
+        zones=_zones(model, folder, lines),
         sha256=read.sha256,
         assumptions=list_assumptions(model, pipes),
     )
@@ -151,7 +153,7 @@ def _path(text: str | None, folder: Path) -> Path | None:
 
 
 def _point(section: str, asked: PointModel, folder: Path, lines: LineMap) -> PointAsk:
-    given = next(name for name in ("x", "lon", "file") if getattr(asked, name) is not None)
+    given = next((name for name in ("x", "lon", "file") if getattr(asked, name) is not None), "kind")
     return PointAsk(
         x=asked.x,
         y=asked.y,
@@ -164,6 +166,16 @@ def _point(section: str, asked: PointModel, folder: Path, lines: LineMap) -> Poi
     )
 
 
+def _intake(model: SiteModel, folder: Path, lines: LineMap) -> IntakeAsk:
+    asked = model.intake
+    return IntakeAsk(
+        at=_point("intake", asked, folder, lines),
+        mouth_level_m=asked.mouth_level_m,
+        kind=asked.kind,
+        underwater_length_m=asked.underwater_length_m,
+    )
+
+
 def _outlet(model: SiteModel, folder: Path, lines: LineMap) -> OutletAsk:
     asked = model.outlet
     return OutletAsk(
@@ -171,6 +183,23 @@ def _outlet(model: SiteModel, folder: Path, lines: LineMap) -> OutletAsk:
         level_m=asked.level_m,
         height_above_ground_m=0.0 if asked.height_above_ground_m is None else asked.height_above_ground_m,
         tailwater_level_m=asked.tailwater_level_m,
+        kind=asked.kind,
+        beyond_toe_m=asked.beyond_toe_m,
+    )
+
+
+def _zones(model: SiteModel, folder: Path, lines: LineMap) -> tuple[ZoneAsk, ...]:
+    return tuple(
+        ZoneAsk(
+            name=asked.name,
+            file=folder / asked.file,
+            layer=asked.layer,
+            kind=asked.kind,
+            cost_factor=1.0 if asked.cost_factor is None else asked.cost_factor,
+            key=f"zones[{number}].file",
+            line=lines.find(f"zones[{number}].file"),
+        )
+        for number, asked in enumerate(model.zones, start=1)
     )
 
 

@@ -102,25 +102,53 @@ class PointModel(Section):
     y: float | None = key("northing in the CRS of the DEM", None, unit="unit of the CRS", **ORDINATES)
     lon: float | None = key("longitude, WGS 84, east positive", None, unit="°", ge=-180, le=180)
     lat: float | None = key("latitude, WGS 84, north positive", None, unit="°", ge=-90, le=90)
-    file: str | None = key("GeoJSON or GeoPackage that holds one point", None, min_length=1)
+    file: str | None = key(
+        "GeoJSON or GeoPackage that holds one point (for an outlet of kind line or polygon: those)", None, min_length=1
+    )
     layer: str | None = key("layer in that file", None, otherwise="its only layer", min_length=1)
 
 
 class IntakeModel(PointModel):
     """Where the pipe takes water: a point in the water body, by one of the three ways."""
 
-    mouth_level_m: float | None = key(
-        "level of the top of the intake mouth; required where the DEM shows the water's surface",
+    kind: Literal["point", "shore"] = key(
+        "where water may be taken: at the point, or anywhere along the shore at the lowest level (the point then says "
+        "of which water)",
+        "point",
+    )
+    underwater_length_m: float | None = key(
+        'length of pipe from the mouth to the shore, with kind = "shore"',
         None,
         unit="m",
-        otherwise="level of the DEM there, where it shows the bed",
+        otherwise="measured on the bed, where the DEM shows it",
+        ge=0,
+        le=10_000,
+    )
+    mouth_level_m: float | None = key(
+        "level of the top of the intake mouth; required for a point where the DEM shows the water's surface",
+        None,
+        unit="m",
+        otherwise='level of the DEM there, where it shows the bed; unknown with kind = "shore"',
         **LEVELS,
     )
 
 
 class OutletModel(PointModel):
-    """Where the pipe lets water go: a point beyond the barrier, by one of the three ways."""
+    """Where the pipe lets water go: a point beyond the barrier, by one of the three ways, or a choice of places."""
 
+    kind: Literal["point", "line", "polygon", "anywhere"] = key(
+        "where the outlet may lie: at the point, on the lines of file, in the polygons of file, or anywhere on ground "
+        "that is low enough and drains to the edge of the DEM",
+        "point",
+    )
+    beyond_toe_m: float = key(
+        'with kind = "anywhere": least distance from the toe, where the ground beyond the barrier falls back to the '
+        "present level",
+        0.0,
+        unit="m",
+        ge=0,
+        le=100_000,
+    )
     level_m: float | None = key("level of the outlet's axis", None, unit="m", otherwise="from the ground", **LEVELS)
     height_above_ground_m: float | None = key(
         "height of the outlet's axis above the ground of the DEM, instead of its level",
@@ -188,6 +216,22 @@ class PricesModel(Section):
     date: DateText = key("when the prices were valid", "", otherwise="not stated")
     invented: bool = key("whether the prices are invented examples; shown wherever a price is", default=False)
     fixed_per_scheme: float = key("cost of a scheme whatever its pipes", 0.0, unit="currency", ge=0)
+
+
+class ZoneModel(Section):
+    """Ground that a route must not touch, or on which laying costs more or less; any number of these tables."""
+
+    name: str = key("name in results and messages", min_length=1, max_length=80)
+    file: str = key("GeoJSON or GeoPackage with the zone's polygons, in any CRS", min_length=1)
+    layer: str | None = key("layer in that file", None, otherwise="its only layer", min_length=1)
+    kind: Literal["barred", "cost"] = key("whether routes must keep out, or laying has another price there", "barred")
+    cost_factor: float | None = key(
+        "what the price of laying is multiplied by there; for kind cost only, and required for it",
+        None,
+        otherwise="none: nothing is laid in a barred zone",
+        ge=0.1,
+        le=100,
+    )
 
 
 class SearchModel(Section):
@@ -273,6 +317,9 @@ class SiteModel(Section):
     pipes: Annotated[tuple[PipeModel, ...], BeforeValidator(lambda v: tuple(v) if isinstance(v, list) else v)] = key(
         "pipe sizes to choose from, one [[pipes]] table each", min_length=1, max_length=200
     )
+    zones: Annotated[tuple[ZoneModel, ...], BeforeValidator(lambda v: tuple(v) if isinstance(v, list) else v)] = key(
+        "barred ground and ground of another price, one [[zones]] table each", (), otherwise="no zones", max_length=200
+    )
     air: AirModel = Field(default_factory=AirModel)
     losses: LossesModel = Field(default_factory=LossesModel)
     limits: LimitsModel = Field(default_factory=LimitsModel)
@@ -294,4 +341,12 @@ SECTIONS: dict[str, type[Section]] = {
     "prices": PricesModel,
     "search": SearchModel,
     "pipes": PipeModel,
+    "zones": ZoneModel,
 }
+#: Those of them that may stand in the file more than once, headed by double brackets.
+REPEATED = frozenset({"pipes", "zones"})
+
+
+def heading(section: str) -> str:
+    """Return the line that heads a table: ``[water]``, ``[[pipes]]``."""
+    return f"[[{section}]]" if section in REPEATED else f"[{section}]"

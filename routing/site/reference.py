@@ -14,7 +14,7 @@ from routing.site.fields import (
     unit_of,
     value_text,
 )
-from routing.site.models import SECTIONS, SiteModel
+from routing.site.models import SECTIONS, SiteModel, heading
 
 _TOP = """# Keys of the site file
 
@@ -36,8 +36,14 @@ _WAYS_OF_A_PIPE = """A pipe is given in one of three ways:
 `roughness_mm` (or `darcy_factor`), `modulus_mpa`, `poisson_ratio` and `ovality_pct` may be set with a table too, and
 then stand in place of the table's. Prices: all pipes have `supply_per_m`, or none has a price.
 """
+_ZONES = """A route never enters the interior of a barred zone, nor does the finished line; it may run along the edge.
+The shape is taken as it is drawn: add what distance is wanted before. Zones may overlap: a bar holds whatever else lies
+there, and of cost zones the dearest counts. A cost zone multiplies the price of laying (`laying_per_m`), not that of
+the pipe.
+"""
 _NOTES = {
     "pipes": _WAYS_OF_A_PIPE,
+    "zones": _ZONES,
     "air": "Where the datum of the DEM is a local or unknown one, one of `pressure_pa` and `altitude_m` is needed.\n",
     "limits": (
         "`pipe_load_hours` is a year unless set, an assumption: a plastic wall yields under lasting load, so a\n"
@@ -87,7 +93,7 @@ def reference_page() -> str:
     """
     parts = [_TOP, _section_text("", {"title": SiteModel.model_fields["title"]}, "Top of the file")]
     for name, model in SECTIONS.items():
-        head = f"`[[{name}]]`" if name == "pipes" else f"`[{name}]`"
+        head = f"`{heading(name)}`"
         meaning = " ".join((model.__doc__ or "").replace("``", "`").split())
         parts.append(_section_text(f"{meaning}\n", model.model_fields, head))
         if name in _NOTES:

@@ -11,7 +11,7 @@ from pydantic.fields import FieldInfo
 
 from routing.site.fields import Section, allowed_text, bounds_of, choices_of, number_text, unit_of, value_text
 from routing.site.ledger import Ledger
-from routing.site.models import SECTIONS, SiteModel
+from routing.site.models import REPEATED, SECTIONS, SiteModel, heading
 
 _WRONG_KIND = {
     "float_type": "must be a number",
@@ -67,7 +67,7 @@ def note_refusals(error: ValidationError, ledger: Ledger) -> None:
             _note_missing(loc, ledger)
         elif kind == "extra_forbidden":
             _note_unknown(loc, value, ledger)
-        elif loc and loc[0] in SECTIONS and (len(loc) == 1 or (loc[0] == "pipes" and len(loc) == 2)):
+        elif loc and loc[0] in SECTIONS and (len(loc) == 1 or (loc[0] in REPEATED and len(loc) == 2)):
             _note_not_a_table(loc, value, ledger)
         else:
             _note_value(loc, kind, value, ledger)
@@ -92,7 +92,7 @@ def example_of(info: FieldInfo) -> str:
 def _note_missing(loc: Loc, ledger: Ledger) -> None:
     key = dotted(loc)
     if len(loc) == 1 and loc[0] in SECTIONS:
-        head = "[[pipes]]" if key == "pipes" else f"[{key}]"
+        head = heading(key)
         commented = ledger.lines.commented.get(key)
         remedy = f"take away the '#' in line {commented} and below it" if commented else f"add a table {head}"
         ledger.add(key, f"the table {head} is missing", allowed=_table_keys(key), remedy=remedy)
@@ -110,13 +110,16 @@ def _table_keys(section: str) -> str:
 
 def _note_not_a_table(loc: Loc, value: Any, ledger: Ledger) -> None:
     key, section = dotted(loc), str(loc[0])
-    empty = section == "pipes" and isinstance(value, list | tuple) and not value
-    many = section == "pipes" and isinstance(value, list | tuple) and len(value) > 0
-    if section == "pipes":
-        allowed, remedy = "1 to 200 tables [[pipes]]", "write each pipe size as a table of its own, headed [[pipes]]"
+    listed = section in REPEATED and isinstance(value, list | tuple)
+    many = listed and len(value) > 0
+    if section in REPEATED:
+        thing, least = ("pipe size", 1) if section == "pipes" else ("zone", 0)
+        allowed = f"{least} to 200 tables {heading(section)}"
+        remedy = f"write each {thing} as a table of its own, headed {heading(section)}"
     else:
         allowed, remedy = f"one table [{section}]", f"write [{section}] on a line of its own and its keys below it"
-    what = "no pipe is listed" if empty else "too many pipes are listed" if many else f"{key} must be a table"
+    unlisted = f"too many {section} are listed" if many else "no pipe is listed"
+    what = unlisted if listed and len(loc) == 1 and (many or section == "pipes") else f"{key} must be a table"
     found = f"{len(value)} entries" if many else value_text(value)
     ledger.add(key, what, found=found, allowed=allowed, remedy=remedy)
 
@@ -130,7 +133,7 @@ def _note_unknown(loc: Loc, value: Any, ledger: Ledger) -> None:
     if near:
         remedy = f"did you mean '{near[0]}'?"
     elif homes:
-        remedy = f"'{name}' belongs under [{homes[0]}]: move it there"
+        remedy = f"'{name}' belongs under {heading(homes[0])}: move it there"
     else:
         far = difflib.get_close_matches(name, known, n=1, cutoff=0.3)
         remedy = f"remove it, or put '#' before it (the nearest known key is '{far[0]}')" if far else "remove it"

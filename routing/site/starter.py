@@ -82,6 +82,12 @@ most_pipes = 4
 invented = false
 fixed_per_scheme = 0.0
 
+# Ground that routes must not touch, or where laying costs more: polygons, any number of these tables.
+# [[zones]]
+# name = "protected bank"
+# file = "bank.geojson"
+# kind = "barred"                # or "cost", and then: cost_factor = 2.0
+
 # Pipe sizes to choose from, one [[pipes]] table each. Prices: for every pipe, or for none.
 [[pipes]]
 table = "ISO 4427"             # polyethylene, by outside diameter and SDR

@@ -100,8 +100,8 @@ def test_the_site_file_keeps_to_the_schema(site):
     raw = tomllib.loads((DEMO / "site.toml").read_text(encoding="utf-8"))
     assert set(raw) <= set(found["properties"])
     for section, table in raw.items():
-        model = {"pipes": "PipeModel"}.get(section, f"{section.title()}Model")
-        for entry in table if section == "pipes" else [table] if isinstance(table, dict) else []:
+        model = {"pipes": "PipeModel", "zones": "ZoneModel"}.get(section, f"{section.title()}Model")
+        for entry in table if isinstance(table, list) else [table] if isinstance(table, dict) else []:
             definition = found["$defs"][model]
             assert set(entry) <= set(definition["properties"])
             assert set(definition.get("required", [])) <= set(entry)

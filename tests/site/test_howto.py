@@ -14,7 +14,7 @@ from routing.site.models import SECTIONS
 
 PAGE = (Path(__file__).resolve().parents[2] / "docs" / "howto" / "site-file.md").read_text(encoding="utf-8")
 TOML = re.findall(r"^```toml\n(.*?)^```", PAGE, flags=re.DOTALL | re.MULTILINE)
-LEAST, POINTS, PIPES, PRICES = TOML
+LEAST, POINTS, PIPES, PRICES, ZONES = TOML
 
 
 def test_the_least_file_loads(make):
@@ -28,6 +28,15 @@ def test_the_parts_fit_into_it(make):
     site = load_site(path)
     assert len(site.pipes) == 3
     assert site.prices.date == "2026-01-31"
+
+
+def test_the_zones_fit_into_it(make):
+    path = make(text=LEAST + "\n" + ZONES)
+    for name in ("bank.geojson", "land.gpkg"):
+        (path.parent / name).touch()
+    bank, meadow = load_site(path).zones
+    assert (bank.name, bank.kind, bank.file) == ("protected bank", "barred", path.parent.resolve() / "bank.geojson")
+    assert (meadow.layer, meadow.kind, meadow.cost_factor) == ("meadows", "cost", 1.6)
 
 
 def test_the_message_is_the_real_one(make):

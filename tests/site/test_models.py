@@ -26,11 +26,13 @@ from routing.records import (
     TerrainAsk,
     WaterAsk,
     WaterShown,
+    ZoneAsk,
+    ZoneKind,
 )
 from routing.search import move_list
 from routing.site import models
 from routing.site.fields import bounds_of, choices_of, unit_of
-from routing.site.models import SECTIONS, PricesModel, SiteModel
+from routing.site.models import REPEATED, SECTIONS, PricesModel, SiteModel
 
 KEYS = [(section, name, info) for section, model in SECTIONS.items() for name, info in model.model_fields.items()]
 IDS = [f"{section}.{name}" for section, name, _ in KEYS]
@@ -65,6 +67,7 @@ UNITS = {
         ("water", WaterAsk),
         ("outlet", OutletAsk),
         ("intake", PointAsk),
+        ("zones", ZoneAsk),
     ],
 )
 def test_a_key_and_the_record_that_it_fills_have_one_default(section, record):
@@ -77,6 +80,8 @@ def test_a_key_and_the_record_that_it_fills_have_one_default(section, record):
     for name, default in shared.items():
         if (section, name) == ("outlet", "height_above_ground_m"):
             assert (default, fields[name]) == (None, 0.0)  # told apart from a height of 0 that was given
+        elif (section, name) == ("zones", "cost_factor"):
+            assert (default, fields[name]) == (None, 1.0)  # told apart from a factor of 1 that was given
         else:
             assert default == fields[name], name
 
@@ -84,7 +89,7 @@ def test_a_key_and_the_record_that_it_fills_have_one_default(section, record):
 def test_the_tables_are_those_of_the_whole_file():
     assert set(SECTIONS) | {"title"} == set(SiteModel.model_fields)
     for name, model in SECTIONS.items():
-        assert model is getattr(models, f"{name.title().removesuffix('s') if name == 'pipes' else name.title()}Model")
+        assert model is getattr(models, f"{name.title().removesuffix('s') if name in REPEATED else name.title()}Model")
 
 
 @pytest.mark.parametrize(("section", "name", "info"), KEYS, ids=IDS)
@@ -117,6 +122,7 @@ def test_every_key_says_what_it_means_and_its_default_is_within_its_range(sectio
         ("terrain", "surface", SurfaceKind),
         ("terrain", "water_shown", WaterShown),
         ("search", "ground_rule", GroundRule),
+        ("zones", "kind", ZoneKind),
     ],
 )
 def test_choices_are_those_of_the_records(section, name, kind):

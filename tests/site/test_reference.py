@@ -6,7 +6,7 @@ import json
 from pathlib import Path
 
 from routing.site import reference_page, schema
-from routing.site.models import SECTIONS
+from routing.site.models import REPEATED, SECTIONS
 
 ROOT = Path(__file__).resolve().parents[2]
 PAGE = ROOT / "docs" / "reference" / "site-file.md"
@@ -21,7 +21,7 @@ def test_the_committed_page_is_the_generated_one():
 def test_every_key_has_a_full_row():
     page = reference_page()
     for section, model in SECTIONS.items():
-        head = f"## `[[{section}]]`" if section == "pipes" else f"## `[{section}]`"
+        head = f"## `[[{section}]]`" if section in REPEATED else f"## `[{section}]`"
         body = page.split(head)[1].split("\n## ")[0]
         rows = [line for line in body.split("\n") if line.startswith("| `")]
         assert [row.split("`")[1] for row in rows] == list(model.model_fields)

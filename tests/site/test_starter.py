@@ -89,13 +89,15 @@ def test_uncommented_but_left_as_it_was_it_is_still_refused(begin):
 
 def test_every_commented_key_is_one_that_may_be_used(begin):
     text = begin().read_text(encoding="utf-8")
-    text = re.sub(r"^# ([a-z][a-z0-9_]* = )", r"\1", text, flags=re.MULTILINE)
+    text = re.sub(r"^# ([a-z][a-z0-9_]* = |\[\[[a-z]+\]\]$)", r"\1", text, flags=re.MULTILINE)
     text = text.replace("pressure_pa = 98000.0\n", "").replace("height_above_ground_m = 0.3 ", "# ")
     text = text.replace("x = 480320.0", "x = 480330.0", 1)
     tomllib.loads(text)
     path = begin()
     path.write_text(text, encoding="utf-8")
+    (path.parent / "bank.geojson").touch()
     assert load_site(path).prices.currency == "EUR"
+    assert load_site(path).zones[0].kind == "barred"
 
 
 def test_the_middle_of_the_dem_and_its_extent_are_shown(begin):
