@@ -4,6 +4,8 @@ from __future__ import annotations
 
 import json
 import os
+import re
+import shlex
 import shutil
 import subprocess
 import sys
@@ -16,6 +18,7 @@ import pytest
 from click.testing import CliRunner
 
 from routing.commands.group import COMMANDS
+from routing.commands.group import overcrest as overcrest_group
 from routing.commands.rio import overcrest as plugin
 
 #: The program of the environment that runs the tests.
@@ -170,3 +173,12 @@ def test_a_stop_keeps_its_exit_code(behind):
     done = CliRunner().invoke(in_a_group({}), ["overcrest", "plan", "site.toml"], prog_name="rio")
     assert done.exit_code == 130
     assert not any(name == "write_run" for name, *_ in behind.calls)
+
+
+def test_the_calls_in_the_how_to_are_such_that_it_takes(project):
+    text = (project / "docs" / "howto" / "gis.md").read_text(encoding="utf-8")
+    calls = re.findall(r"^rio overcrest (.+)$", text, re.MULTILINE)
+    assert len(calls) >= 3
+    for call in calls:
+        name, *rest = shlex.split(call)
+        overcrest_group.get_command(click.Context(overcrest_group), name).make_context(name, rest)
