@@ -13,30 +13,18 @@ from dataclasses import dataclass, replace
 import numpy as np
 from numpy.typing import NDArray
 
-from routing.records import BoolArray
-from routing.search.grid import Grid
-from routing.search.paths import PathEdges, may_escape, path_edges, raise_needed
-from routing.search.reaching import CellLike, Limitation, Reach, Tick, search_grid
+from routing.search.ends import Job, arrival, most_by_energy, search_back, search_job
+from routing.search.paths import PathEdges, may_escape, path_edges, raise_needed, with_highest
+from routing.search.reaching import Limitation, Reach
 from routing.search.widest import bound_by_cells, compact, spread
 
 # Below this share of what the fall alone would drive, a route counts as carrying nothing.
 _NO_FLOW = 1e-6
 # A bracket this narrow is closed sooner by probes than by cells.
 _COARSE = 0.01
-
-
-@dataclass(frozen=True, slots=True)
-class Job:
-    """One search problem: from the source to the goal on a grid.
-
-    ``band`` marks the cells from which a path may leave the window (see `border_band`).
-    """
-
-    grid: Grid
-    source: CellLike
-    goal: CellLike
-    band: BoolArray
-    tick: Tick | None = None
+# Each round brings the highest places much closer; what is then left is within rounding.
+_TOUCHES = 6
+_HAIR_M = 1e-9
 
 
 @dataclass(frozen=True, slots=True)
@@ -113,15 +101,41 @@ class _Bracket:
         return replace(self, high=high, proven=proven)
 
 
-def _probe(job: Job, limitation: Limitation) -> tuple[PathEdges | None, bool]:
-    """Search once; return the shortest path and whether it is (or its absence is) proven outside the window."""
-    limited = replace(limitation, goal=job.goal)
-    found: Reach = search_grid(job.grid, [job.source], limited, tick=job.tick)
-    length = float(found.length_m[job.goal])
-    if not np.isfinite(length):
-        return None, not may_escape(job.grid, found, job.band, job.goal, limitation.longest_m)
-    path = path_edges(job.grid, found.path_to(*job.goal), limitation)
-    return path, not may_escape(job.grid, found, job.band, job.goal, length)
+@dataclass(frozen=True, slots=True)
+class _Answer:
+    """What one search says: the path or none, whether that is proven outside, and the shortest length to any goal."""
+
+    path: PathEdges | None
+    proven: bool
+    shortest_m: float
+    found: Reach
+
+
+def _escapes(job: Job, found: Reach, longest_m: float) -> bool:
+    goals = None if job.goals_outside else job.goals
+    return may_escape(job.grid, found, job.band, goals, longest_m)
+
+
+def _answer(job: Job, found: Reach, limitation: Limitation, *, most_slack: bool) -> _Answer:
+    """Read the answer off a field."""
+    end = arrival(job, found, limitation, most_slack=most_slack)
+    if end is None:
+        return _Answer(None, not _escapes(job, found, limitation.longest_m), np.inf, found)
+    cells = found.path_to(*end.goal)
+    start = float(found.length_m[cells[0, 0], cells[0, 1]])
+    path = path_edges(job.grid, cells, limitation, start)
+    return _Answer(path, not _escapes(job, found, end.shortest_m), end.shortest_m, found)
+
+
+def _probe(job: Job, limitation: Limitation, *, most_slack: bool = False) -> _Answer:
+    """Search once; return the path (the shortest, or the one with most head to spare) or its absence."""
+    return _answer(job, search_job(job, limitation), limitation, most_slack=most_slack)
+
+
+def _most(job: Job, flow: Flow, answer: _Answer) -> float:
+    """Return what the fall drives at most by any path no shorter than those of an answer."""
+    most = flow.carried_at_length(answer.shortest_m)
+    return most if job.open_ends is None else most_by_energy(job, answer.found, flow.limit_at, most)
 
 
 def shortest_path(job: Job, limitation: Limitation) -> Found:
@@ -132,31 +146,40 @@ def shortest_path(job: Job, limitation: Limitation) -> Found:
     Found
         With ``path`` ``None`` where no path does.
     """
-    path, proven = _probe(job, limitation)
-    length = path.length_m if path is not None else np.inf
-    return Found(path, length, length, proven, 1)
+    answer = _probe(job, limitation)
+    return Found(answer.path, answer.shortest_m, answer.shortest_m, answer.proven, 1)
+
+
+def _figure(job: Job, flow: Flow, path: PathEdges) -> float:
+    """Return what a path carries: by its samples, then by the highest place of each edge under the ceiling found."""
+    figure = flow.carried_by(path)
+    for _ in range(_TOUCHES):
+        limitation = flow.limit_at(figure)
+        if raise_needed(job.grid, path, limitation) <= _HAIR_M:
+            break
+        figure = flow.carried_by(with_highest(job.grid, path, limitation))
+    return figure
 
 
 def _carried(job: Job, flow: Flow, way: NDArray[np.intp], limitation: Limitation) -> tuple[PathEdges, float]:
     path = path_edges(job.grid, way, limitation)
-    return path, flow.carried_by(path)
+    return path, _figure(job, flow, path)
 
 
 def _first_bracket(job: Job, flow: Flow) -> _Bracket:
     """Search under the ceiling of still water, and where suction governs narrow the bracket down by cells."""
     still = flow.limit_at(0.0)
-    forward = search_grid(job.grid, [job.source], still, tick=job.tick)
-    length = float(forward.length_m[job.goal])
-    proven = not may_escape(job.grid, forward, job.band, job.goal, length)
-    if not np.isfinite(length):
-        return _Bracket(None, 0.0, 0.0, proven, 1)
-    path, low = _carried(job, flow, forward.path_to(*job.goal), still)
-    bracket = _Bracket(path, low, max(low, flow.carried_at_length(length)), proven, 1, path, proven)
-    if bracket.closed(_COARSE):
+    answer = _answer(job, search_job(job, still, whole=True), still, most_slack=False)
+    if answer.path is None:
+        return _Bracket(None, 0.0, 0.0, answer.proven, 1)
+    low = _figure(job, flow, answer.path)
+    high = max(low, _most(job, flow, answer))
+    bracket = _Bracket(answer.path, low, high, answer.proven, 1, answer.path, answer.proven)
+    if bracket.closed(_COARSE) or job.open_ends is not None:
         return bracket
-    forward = compact(forward)
+    forward = compact(answer.found)
     level = replace(still, ceiling_gradient=0.0)  # a ceiling that falls on the way out would rise on the way back
-    backward = compact(search_grid(job.grid, [job.goal], level, tick=job.tick))
+    backward = compact(search_back(job, level))
     bracket = replace(bracket, searches=2)
     figures = spread(bracket.low, bracket.high)
     limits = [flow.limit_at(figure) for figure in figures]
@@ -166,7 +189,7 @@ def _first_bracket(job: Job, flow: Flow) -> _Bracket:
     if bound.high >= bracket.high:
         return bracket
     longest = flow.limit_at(bound.high).longest_m
-    return bracket.below(bound.high, proven=not may_escape(job.grid, forward, job.band, job.goal, longest))
+    return bracket.below(bound.high, proven=not _escapes(job, forward, longest))
 
 
 def largest_discharge(job: Job, flow: Flow, *, tolerance: float = 1e-3) -> Found:
@@ -190,24 +213,24 @@ def largest_discharge(job: Job, flow: Flow, *, tolerance: float = 1e-3) -> Found
     while not bracket.closed(tolerance) and bracket.high > nothing:
         low, high = bracket.low, bracket.high
         discharge = low * (1.0 + tolerance) if ask_for_better else 0.5 * (low + high)
-        path, outside = _probe(job, flow.limit_at(discharge))
+        answer = _probe(job, flow.limit_at(discharge), most_slack=True)
         bracket = replace(bracket, searches=bracket.searches + 1)
-        if path is None:
-            bracket = bracket.below(discharge, proven=outside)
+        if answer.path is None:
+            bracket = bracket.below(discharge, proven=answer.proven)
             ask_for_better = False
             continue
         # The search itself let the path through at this discharge: rounding in the figure may not take that back,
         # or the bracket would never close.
-        bracket = bracket.with_path(path, max(flow.carried_by(path), discharge))
-        at_length = flow.carried_at_length(path.length_m)
-        if at_length < bracket.high:
-            bracket = bracket.below(at_length, proven=outside)
+        bracket = bracket.with_path(answer.path, max(_figure(job, flow, answer.path), discharge))
+        most = _most(job, flow, answer)
+        if most < bracket.high:
+            bracket = bracket.below(most, proven=answer.proven)
         ask_for_better = not ask_for_better
     above = bracket.low * (1.0 + tolerance)
     if not bracket.proven and above > bracket.high:  # the ceiling of a little more may close the ways out of the window
-        path, outside = _probe(job, flow.limit_at(above))
+        answer = _probe(job, flow.limit_at(above))
         bracket = replace(bracket, searches=bracket.searches + 1)
-        if path is None and outside:
+        if answer.path is None and answer.proven:
             bracket = bracket.below(above, proven=True)
     high = max(bracket.low, bracket.high)
     return Found(
@@ -224,23 +247,23 @@ def least_raise(job: Job, limitation: Limitation, *, tolerance_m: float = 0.002)
         ``high`` is the raise (in m) that the path needs, 0 where it needs none; ``low`` a raise below which there is
         no path. ``path`` is ``None`` where no raise helps: no way joins the ends within ``longest_m``.
     """
-    open_sky = replace(limitation, ceiling_level_m=np.inf, ceiling_gradient=0.0, cap_level_m=np.inf)
-    best, outside = _probe(job, open_sky)
-    searches = 1
+    open_sky = replace(limitation, ceiling_level_m=np.inf, cap_level_m=np.inf)
+    first = _probe(job, open_sky)
+    best, searches = first.path, 1
     if best is None:
-        return Found(None, np.inf, np.inf, outside, searches)
-    high = raise_needed(job.grid, best.cells, limitation)
+        return Found(None, np.inf, np.inf, first.proven, searches)
+    high = raise_needed(job.grid, best, limitation)
     low, proven = 0.0, True  # nothing needs less than none
     ask_for_better = False
     while high - low > tolerance_m:
         lift = high - tolerance_m if ask_for_better else 0.5 * (low + high)
-        path, outside = _probe(job, limitation.raised(lift))
+        answer = _probe(job, limitation.raised(lift))
         searches += 1
-        if path is None:
-            low, proven = lift, outside
+        if answer.path is None:
+            low, proven = lift, answer.proven
             ask_for_better = False
         else:
             # No more than it was let through at, whatever rounding says.
-            best, high = path, min(lift, raise_needed(job.grid, path.cells, limitation))
+            best, high = answer.path, min(lift, raise_needed(job.grid, answer.path, limitation))
             ask_for_better = not ask_for_better
     return Found(best, low, high, proven, searches)

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
@@ -119,26 +119,28 @@ def path_edges(grid: Grid, cells: NDArray[np.intp], limitation: Limitation, star
     )
 
 
-def raise_needed(grid: Grid, cells: NDArray[np.intp], limitation: Limitation) -> float:
+def with_highest(grid: Grid, path: PathEdges, limitation: Limitation) -> PathEdges:
+    """Return a path with the very place of each edge that stands highest under a falling ceiling, told at its far end.
+
+    Between the samples of the rule along edges ground can stand a little higher; by the far-end rule nothing is added.
+    """
+    if not (limitation.along and limitation.rule == "bilinear"):
+        return path
+    taken, flat, edge = _edges_of(grid, path.cells)
+    tilts = limitation.ceiling_gradient * edge
+    level = kernel.path_tilted_highs(grid.ground, grid.moves, flat[:-1], taken, tilts)
+    far = path.start_length_m + np.cumsum(edge)
+    return replace(path, at_length_m=np.append(path.at_length_m, far), at_level_m=np.append(path.at_level_m, level))
+
+
+def raise_needed(grid: Grid, path: PathEdges, limitation: Limitation) -> float:
     """Return how far ceiling and cap of a limitation must be raised for a path, in m: 0 where it keeps to them.
 
-    Exact: each edge by its own highest place under the falling ceiling, not by samples.
-
-    Raises
-    ------
-    InputError
-        If two successive cells are not joined by a move of the grid.
+    ``path`` is to be judged by the rules of the limitation (see `path_edges`).
     """
-    taken, flat, edge = _edges_of(grid, cells)
-    falling = limitation.ceiling_level_m - limitation.ceiling_gradient * np.cumsum(edge)
-    bilinear = limitation.rule == "bilinear"
-    high = held = kernel.path_highs(grid.ground, grid.moves, bilinear, flat[:-1], taken)
-    if bilinear and limitation.along:
-        tilts = limitation.ceiling_gradient * edge
-        held = kernel.path_tilted_highs(grid.ground, grid.moves, flat[:-1], taken, tilts)
-    start = grid.ground.level[flat[0]] - min(limitation.ceiling_level_m, limitation.cap_level_m)
-    over = np.maximum(held - falling, high - limitation.cap_level_m)
-    return float(max(start, over.max(initial=0.0), 0.0))
+    path = with_highest(grid, path, limitation)
+    falling = limitation.ceiling_level_m - limitation.ceiling_gradient * path.at_length_m
+    return float(max(np.max(path.at_level_m - np.minimum(falling, limitation.cap_level_m)), 0.0))
 
 
 def border_band(grid: Grid, open_sides: tuple[bool, bool, bool, bool]) -> BoolArray:
@@ -153,16 +155,18 @@ def border_band(grid: Grid, open_sides: tuple[bool, bool, bool, bool]) -> BoolAr
     return band
 
 
-def may_escape(grid: Grid, found: Reach, band: BoolArray, goals: ArrayLike, longest_m: float) -> bool:
+def may_escape(grid: Grid, found: Reach, band: BoolArray, goals: ArrayLike | None, longest_m: float) -> bool:
     """Whether a path through ground outside the window might be shorter than ``longest_m``.
 
     Such a path leaves over a band cell, so it is at least as long as the length to that cell plus the straight
     distance from there to the goal. ``goals`` is a cell or a (m, 2) array of cells; of several, the nearest side of
-    the box round them counts.
+    the box round them counts. ``None``: there may be goals anywhere outside, so only the length to the border counts.
     """
     cells = np.argwhere(band & np.isfinite(found.length_m))
     if cells.size == 0:
         return False
+    if goals is None:
+        return bool(np.any(found.length_m[cells[:, 0], cells[:, 1]] < longest_m * (1.0 - 1e-12)))
     goals = np.atleast_2d(np.asarray(goals, dtype=np.intp))
     first, last = goals.min(axis=0), goals.max(axis=0)
     outside = np.maximum(np.maximum(first - cells, cells - last), 0)
