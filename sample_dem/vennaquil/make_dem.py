@@ -54,7 +54,7 @@ def relief(east: Grid, south: Grid, longest_m: float, count: int) -> Grid:
 
 
 def warped(east: Grid, south: Grid) -> tuple[Grid, Grid]:
-    """Return positions shifted a little to and fro, so that nothing on the map is drawn with a ruler."""
+    """Return positions shifted a little this way and that, so that nothing on the map is drawn with a ruler."""
     by_east = 34.0 * relief(east, south, 520.0, 6)
     by_south = 34.0 * relief(east + 731.0, south - 412.0, 470.0, 6)
     return east + by_east, south + by_south
