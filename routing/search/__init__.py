@@ -4,10 +4,11 @@
 siphon; `lowest_crest` floods the bilinear ground.
 """
 
-from routing.search.choosing import Flow, Found, Job, largest_discharge, least_raise, shortest_path
+from routing.search.choosing import Flow, Found, largest_discharge, least_raise, shortest_path
 from routing.search.compiling import cache_folder, kernels_ready
 from routing.search.crests import Crest, lowest_crest
 from routing.search.divides import Pass, distinct_passes, divide_cells, join_paths
+from routing.search.ends import Job, OpenEnds
 from routing.search.gaps import moves_over_gaps
 from routing.search.grid import Grid, free_ratio, prepare_grid
 from routing.search.moves import move_list
@@ -22,6 +23,7 @@ __all__ = [
     "Grid",
     "Job",
     "Limitation",
+    "OpenEnds",
     "Pass",
     "PathEdges",
     "Reach",

@@ -11,7 +11,7 @@ import numpy as np
 from numpy.typing import ArrayLike
 
 from routing.records import FloatArray
-from routing.search.choosing import Job
+from routing.search.ends import Job
 from routing.search.grid import weighted_grid
 from routing.search.paths import PathEdges, path_edges
 from routing.search.reaching import Limitation, search_grid
