@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from datetime import UTC, datetime
 from pathlib import Path
+from typing import Literal
 
 import click
 
@@ -39,16 +40,33 @@ from routing.commands.warming import tell_if_compiling
     metavar="N",
     help="Schemes to show in the table; the files and the JSON document hold all.",
 )
+@click.option(
+    "--pictures",
+    type=click.Choice(["overview", "all", "none"]),
+    default="overview",
+    show_default=True,
+    help="Pictures to draw: one of the whole plan, or one of each route besides, or none.",
+)
+@click.option("--no-pictures", "pictures", flag_value="none", help="The same as --pictures none.")
 @json_option
 @quiet_option
 @verbose_option
 @click.pass_obj
-def plan(call: Call, site_file: Path, folder: Path | None, replace: bool, top: int, as_json: bool, quiet: bool) -> int:
+def plan(
+    call: Call,
+    site_file: Path,
+    folder: Path | None,
+    replace: bool,
+    top: int,
+    pictures: Literal["overview", "all", "none"],
+    as_json: bool,
+    quiet: bool,
+) -> int:
     """Find the routes that a siphon can work on for the site file SITE, and rank what can be built on them.
 
-    Writes one folder: routes.geojson for the map, schemes.csv with every figure, run.json with all that the
-    results rest on. Where no route is feasible the folder is written all the same, says what is missing, and
-    the exit code is 3.
+    Writes one folder: routes.geojson for the map, schemes.csv with every figure, overview.png and overview.svg with
+    map and long section, run.json with all that the results rest on. Where no route is feasible the folder is
+    written all the same, says what is missing, and the exit code is 3.
     """
     from routing.outputs import RunFacts, check_folder, plan_document, summary, write_run
     from routing.planning import plan as make_plan
@@ -63,7 +81,7 @@ def plan(call: Call, site_file: Path, folder: Path | None, replace: bool, top: i
         result = make_plan(site, progress=report)
         call.stop.check()
     run = RunFacts(command=call.words, started=started, finished=datetime.now(UTC))
-    write_run(result, folder, replace=replace, run=run)
+    write_run(result, folder, replace=replace, run=run, pictures=pictures)
     if as_json:
         emit_json({**plan_document(result, run), "folder": str(folder)})
     else:

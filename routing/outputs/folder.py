@@ -18,6 +18,8 @@ from typing import Any
 
 from routing.errors import OutputError, Problem
 from routing.outputs.geojson import layer_text, points_layer, routes_layer, water_layer
+from routing.outputs.pictures.quiet import quietly
+from routing.outputs.pictures.subject import Wanted
 from routing.outputs.runfacts import RunFacts
 from routing.outputs.runfile import plan_document
 from routing.outputs.tables import checks_table, costs_table, fields_table, schemes_table, sections_table
@@ -39,7 +41,9 @@ WRITERS: dict[str, Callable[[Plan], str]] = {
 }
 
 
-def write_run(plan: Plan, folder: Path, *, replace: bool = False, run: RunFacts | None = None) -> list[Path]:
+def write_run(
+    plan: Plan, folder: Path, *, replace: bool = False, run: RunFacts | None = None, pictures: Wanted = "overview"
+) -> list[Path]:
     """Write every file of a plan into a new folder.
 
     Parameters
@@ -53,6 +57,9 @@ def write_run(plan: Plan, folder: Path, *, replace: bool = False, run: RunFacts 
         nothing at all, is replaced.
     run
         Command, times and further inputs, for ``run.json``.
+    pictures
+        ``"overview"``: one picture of the plan with its best scheme; ``"all"``: besides, one of each route;
+        ``"none"``: no picture.
 
     Returns
     -------
@@ -66,12 +73,22 @@ def write_run(plan: Plan, folder: Path, *, replace: bool = False, run: RunFacts 
     """
     target = check_folder(folder, replace=replace)
     with _system_errors_told(folder), _scratch(target) as scratch:
-        written = [_write(scratch / name, writer(plan)) for name, writer in WRITERS.items()]
+        written = [_write(scratch / name, writer(plan).encode("utf-8")) for name, writer in WRITERS.items()]
+        written += [_write(scratch / name, data) for name, data in _pictures(plan, pictures)]
         document = {**plan_document(plan, run), "files": written}
-        written.append(_write(scratch / RUN_FILE, json_text(document)))
+        written.append(_write(scratch / RUN_FILE, json_text(document).encode("utf-8")))
         check_folder(folder, replace=replace)  # again: something may have come there while this was written
         _put_in_place(scratch, target, folder)
     return [folder / str(file["name"]) for file in written]
+
+
+def _pictures(plan: Plan, wanted: Wanted) -> Iterator[tuple[str, bytes]]:
+    """Draw the pictures; the library that draws is loaded only here."""
+    if wanted == "none":
+        return
+    with quietly():
+        from routing.outputs.pictures.files import picture_files  # noqa: PLC0415 - takes long to load
+    yield from picture_files(plan, wanted)
 
 
 def check_folder(folder: Path, *, replace: bool = False) -> Path:
@@ -165,9 +182,8 @@ def _scratch(target: Path) -> Iterator[Path]:
         shutil.rmtree(scratch, ignore_errors=True)
 
 
-def _write(path: Path, text: str) -> dict[str, str | int]:
+def _write(path: Path, data: bytes) -> dict[str, str | int]:
     """Write a file through to the disk and return its entry in ``run.json``."""
-    data = text.encode("utf-8")
     with path.open("wb") as file:
         file.write(data)
         file.flush()

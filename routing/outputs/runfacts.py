@@ -19,6 +19,7 @@ FORMAT = 1
 #: Libraries whose versions can change a result. They are looked up, not imported.
 LIBRARIES: tuple[str, ...] = (
     "geopandas",
+    "matplotlib",
     "numba",
     "numpy",
     "pydantic",

@@ -20,6 +20,7 @@ class Behind:
 
     feasible: bool = True
     ready: bool = True
+    pictures: str = "not asked"
     work: Callable[[Callable[[str, float], None]], None] = lambda report: report("search", 1.0)
     calls: list[tuple[Any, ...]] = field(default_factory=list)
 
@@ -38,8 +39,9 @@ class Behind:
             raise OutputError(Problem("the folder exists already", remedy="use --replace"))
         return folder
 
-    def write_run(self, plan: Any, folder: Path, *, replace: bool, run: SimpleNamespace) -> None:
+    def write_run(self, plan: Any, folder: Path, *, replace: bool, run: SimpleNamespace, pictures: str) -> None:
         self.calls.append(("write_run", folder, replace, run.command))
+        self.pictures = pictures
 
 
 def _room(monkeypatch: pytest.MonkeyPatch, name: str, **names: Any) -> None:

@@ -5,6 +5,8 @@ from __future__ import annotations
 import json
 from pathlib import Path
 
+import pytest
+
 from routing.commands import main
 
 
@@ -42,6 +44,27 @@ def test_replace_reaches_the_writer(behind, tmp_path):
     (tmp_path / "here").mkdir()
     assert main(["plan", "weir.toml", "--out", "here", "--replace"]) == 0
     assert behind.calls[-1][:3] == ("write_run", Path("here"), True)
+
+
+@pytest.mark.parametrize(
+    ("asked", "wanted"),
+    [
+        ([], "overview"),
+        (["--pictures", "all"], "all"),
+        (["--pictures", "overview"], "overview"),
+        (["--pictures", "none"], "none"),
+        (["--no-pictures"], "none"),
+    ],
+)
+def test_pictures_are_drawn_as_asked(behind, asked, wanted):
+    assert main(["plan", "weir.toml", *asked]) == 0
+    assert behind.pictures == wanted
+
+
+def test_an_unknown_choice_of_pictures_is_refused(behind, capsys):
+    assert main(["plan", "weir.toml", "--pictures", "some"]) == 2
+    assert "some" in capsys.readouterr().err
+    assert behind.calls == []
 
 
 def test_first_run_says_that_it_compiles(behind, capsys):
