@@ -10,10 +10,11 @@ from numpy.typing import NDArray
 
 from routing.hydraulics import discharge_under, energy_discharge_m3s, suction_ceiling
 from routing.planning.scenes import Scene
+from routing.planning.zoning import route_line
 from routing.records import GroundLine, Pipe, Profile, Proof, Route, Setting, Site
 from routing.schemes import Conditions, crown_offset_m
 from routing.search import Flow, Found, Job, Limitation, PathEdges, border_band, free_ratio
-from routing.terrain import long_section, xy_of
+from routing.terrain import long_section
 
 
 @dataclass(frozen=True, slots=True)
@@ -82,16 +83,12 @@ class Bench:
 
     def route(self, path: PathEdges, line: GroundLine, best: Found) -> Route:
         """Make a route of a path; the same path always gets the same name."""
-        from shapely import LineString  # noqa: PLC0415 - not needed by look
-
         key = path.cells.tobytes()
         name = self.names.setdefault(key, f"R{len(self.names) + 1}")
-        corners = _corners(path.cells)
-        x, y = xy_of(self.scene.terrain, corners[:, 0], corners[:, 1])
         return Route(
             name=name,
             cells=path.cells,
-            line=LineString(np.column_stack([x, y])),
+            line=route_line(self.scene.terrain, self.scene.zones, path.cells, _corners(path.cells)),
             x=line.x,
             y=line.y,
             chainage_m=line.chainage_m,
@@ -105,8 +102,10 @@ class Bench:
         where = "on the whole DEM" if whole else "inside the part of the DEM that was read"
         ask = self.site.search
         rule = "bilinear ground" if ask.ground_rule == "bilinear" else "cells"
+        bars = self.scene.zones is not None and self.scene.zones.blocked_moves.any()
+        clear = " clear of the barred zones" if bars else ""
         text = (
-            f"No path {where} ({ask.neighbours} neighbours, {rule}) carries more than "
+            f"No path {where}{clear} ({ask.neighbours} neighbours, {rule}) carries more than "
             f"{best.high:.4g} m3/s in one pipe; the best found carries {best.low:.4g} by the same rule. "
             f"The path is {path.length_m:.1f} m long; no line of any kind is shorter than {straight:.1f} m."
         )

@@ -3,21 +3,24 @@
 from __future__ import annotations
 
 from contextlib import ExitStack
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from pathlib import Path
 
 import numpy as np
 
 from routing.planning.barriers import barrier_cells
+from routing.planning.bars import with_bars_told
 from routing.planning.benches import Bench
 from routing.planning.candidates import Candidate, Offer, offer_of
+from routing.planning.extras import Extras, find_extras
 from routing.planning.hollows import hollow_note
 from routing.planning.reports import Progress, Reporter, reporter
 from routing.planning.scenes import Scene, first_window, grown_window, place_ends, survey
 from routing.planning.settings import resolve
+from routing.planning.zoning import check_lines
 from routing.records import Outlook, Plan, Scheme, Setting, Site, TerrainFacts
 from routing.schemes import Matter, judge, price_scheme, rank
-from routing.terrain import inspect, open_dem
+from routing.terrain import inspect, lengths_in_zones, open_dem
 
 
 def inspect_dem(path: Path) -> TerrainFacts:
@@ -83,6 +86,7 @@ class _Survey:
     scene: Scene
     setting: Setting
     offers: tuple[Offer, ...]
+    names: dict[bytes, str]
 
     @property
     def proven(self) -> bool:
@@ -98,8 +102,10 @@ def _search(site: Site, scene: Scene, report: Reporter) -> _Survey:
         with ExitStack() as stack:
             name = f"routes for pipe {number} of {len(site.pipes)}"
             tick = stack.enter_context(report.stage(name, scene.terrain.elevation_m.size))
-            offers.append(offer_of(Bench(site, scene, setting, tick, names), pipe))
-    return _Survey(scene, setting, tuple(offers))
+            bench = Bench(site, scene, setting, tick, names)
+            offer = offer_of(bench, pipe)
+            offers.append(replace(offer, shortfall=with_bars_told(bench, pipe, offer.shortfall)))
+    return _Survey(scene, setting, tuple(offers), names)
 
 
 def _surveyed(site: Site, report: Reporter) -> _Survey:
@@ -118,7 +124,8 @@ def _surveyed(site: Site, report: Reporter) -> _Survey:
 
 def _scheme(survey_: _Survey, bench: Bench, candidate: Candidate) -> Scheme:
     site, scene = bench.site, survey_.scene
-    cost = price_scheme(candidate.pipe, candidate.route.length_m, candidate.count, site.prices)
+    zones = () if scene.zones is None else lengths_in_zones(candidate.route, scene.zones.zones)
+    cost = price_scheme(candidate.pipe, candidate.route.length_m, candidate.count, site.prices, zones)
     verdict = judge(
         Matter(
             pipe=candidate.pipe,
@@ -134,6 +141,25 @@ def _scheme(survey_: _Survey, bench: Bench, candidate: Candidate) -> Scheme:
         )
     )
     return Scheme(0, candidate.route, candidate.pipe, candidate.count, candidate.appraisal, cost, verdict)
+
+
+def _ranked(survey_: _Survey, bench: Bench, candidates: tuple[Candidate, ...]) -> tuple[Scheme, ...]:
+    asked = bench.site.demand.discharge_m3s is not None
+    return rank([_scheme(survey_, bench, candidate) for candidate in candidates], asked=asked)
+
+
+def _extras(
+    survey_: _Survey, bench: Bench, candidates: tuple[Candidate, ...], report: Reporter
+) -> tuple[Extras, tuple[Candidate, ...]]:
+    """Look for other ways over, led by the best scheme so far."""
+    if not candidates:
+        return Extras((), (), "", ()), candidates
+    best = _ranked(survey_, bench, candidates)[0]
+    lead = next(
+        one for one in candidates if one.pipe == best.pipe and one.count == best.count and one.route is best.route
+    )
+    with report.stage("other ways over", 6 * survey_.scene.terrain.elevation_m.size) as tick:
+        return find_extras(replace(bench, tick=tick), lead, candidates, None)
 
 
 def _proof_warnings(survey_: _Survey) -> tuple[str, ...]:
@@ -174,11 +200,11 @@ def plan(site: Site, progress: Progress | None = None) -> Plan:
     report = reporter(progress)
     survey_ = _surveyed(site, report)
     scene, setting = survey_.scene, survey_.setting
-    bench = Bench(site, scene, setting, lambda _: None)
-    candidates = [candidate for offer in survey_.offers for candidate in offer.candidates]
-    schemes = rank(
-        [_scheme(survey_, bench, candidate) for candidate in candidates], asked=site.demand.discharge_m3s is not None
-    )
+    bench = Bench(site, scene, setting, lambda _: None, survey_.names)
+    candidates = tuple(candidate for offer in survey_.offers for candidate in offer.candidates)
+    extras, candidates = _extras(survey_, bench, candidates, report)
+    schemes = _ranked(survey_, bench, (*candidates, *extras.candidates))
+    check_lines(scene.zones, (scheme.route for scheme in schemes))
     return Plan(
         site=site,
         terrain=scene.terrain,
@@ -190,4 +216,5 @@ def plan(site: Site, progress: Progress | None = None) -> Plan:
         assumptions=_assumptions(site, scene, setting),
         warnings=(*scene.warnings, *hollow_note(scene, setting), *_proof_warnings(survey_)),
         timings_s=report.timings_s,
+        zones=() if scene.zones is None else scene.zones.zones,
     )

@@ -12,10 +12,12 @@ import numpy as np
 from routing.errors import InputError, Problem, SiteError
 from routing.planning.edges import gap_runs_out, outer_edge
 from routing.planning.ends import check_outlet, check_wet
+from routing.planning.grids import lay_zones, make_grid
 from routing.planning.reports import Reporter
 from routing.planning.troubles import site_problem
-from routing.records import Cell, GridWindow, PlacedPoint, Saddle, Site, Terrain, WaterBody
-from routing.search import Crest, Grid, lowest_crest, moves_over_gaps, prepare_grid
+from routing.planning.zoning import check_free
+from routing.records import Cell, GridWindow, PlacedPoint, Saddle, Site, Terrain, WaterBody, ZoneMap
+from routing.search import Crest, Grid, lowest_crest
 from routing.terrain import (
     Dem,
     FlatWater,
@@ -65,6 +67,7 @@ class Scene:
     crest: Saddle | None
     proven: bool
     warnings: tuple[str, ...]
+    zones: ZoneMap | None = None
 
 
 def place_ends(site: Site, dem: Dem) -> Ends:
@@ -182,20 +185,6 @@ def _read(site: Site, dem: Dem, ends: Ends, window: GridWindow) -> Terrain:
         window = larger
 
 
-def _grid(site: Site, terrain: Terrain) -> Grid:
-    """Make the ground ready for the search; where only cells are looked at, long sections must still be possible."""
-    ask = site.search
-    gaps = ask.ground_rule == "cells" and not terrain.valid.all()
-    return prepare_grid(
-        terrain.elevation_m,
-        terrain.step_x_m,
-        terrain.step_y_m,
-        valid=terrain.valid,
-        blocked_moves=moves_over_gaps(terrain.valid, ask.neighbours) if gaps else None,
-        neighbours=ask.neighbours,
-    )
-
-
 def _look_at(site: Site, dem: Dem, ends: Ends, window: GridWindow, tick: Callable[[int], None]) -> Scene:
     """Read one window and find water body, lowest crest and spill in it."""
     terrain = _read(site, dem, ends, window)
@@ -208,7 +197,8 @@ def _look_at(site: Site, dem: Dem, ends: Ends, window: GridWindow, tick: Callabl
     check_wet(site, terrain, intake, shown)
     body = _body(site, terrain, ends, intake, shown)
     terrain = with_voids_as_water(terrain, body)
-    grid = _grid(site, terrain)
+    zones = lay_zones(site, terrain)
+    grid = make_grid(site, terrain, zones)
     goal = np.zeros(grid.shape, dtype=np.bool_)
     goal[outlet] = True
     border = window.open_border()
@@ -232,6 +222,7 @@ def _look_at(site: Site, dem: Dem, ends: Ends, window: GridWindow, tick: Callabl
         crest=to_outlet,
         proven=not body.touches_open_border and (window.whole or (to_outlet is not None and to_outlet.proven)),
         warnings=(),
+        zones=zones,
     )
 
 
@@ -270,7 +261,7 @@ def _warnings(site: Site, scene: Scene) -> tuple[str, ...]:
             "No flat water surface was found at the intake, though the DEM is said to show one: check "
             "terrain.water_shown and the levels."
         )
-    return tuple(notes)
+    return (*notes, *(() if scene.zones is None else scene.zones.notes))
 
 
 def survey(site: Site, dem: Dem, ends: Ends, window: GridWindow, reporter: Reporter) -> Scene:
@@ -292,4 +283,6 @@ def survey(site: Site, dem: Dem, ends: Ends, window: GridWindow, reporter: Repor
             break
         window = larger
     check_outlet(site, scene.terrain, scene.grid, scene.body, scene.crest, (scene.intake_cell, scene.outlet_cell))
+    for end, at in (("intake", (ends.intake, scene.intake_cell)), ("outlet", (ends.outlet, scene.outlet_cell))):
+        check_free(site, scene.terrain, scene.zones, end, at)
     return replace(scene, warnings=_warnings(site, scene))

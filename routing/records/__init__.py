@@ -32,6 +32,7 @@ from routing.records.ground import (
     WaterShown,
     Zone,
     ZoneKind,
+    ZoneLength,
     ZoneMap,
 )
 from routing.records.hydraulic import (
@@ -121,5 +122,6 @@ __all__ = [
     "Zone",
     "ZoneAsk",
     "ZoneKind",
+    "ZoneLength",
     "ZoneMap",
 ]

@@ -208,6 +208,15 @@ class ZoneMap:
 
 
 @dataclass(frozen=True, slots=True)
+class ZoneLength:
+    """How many metres along the ground a line has in a cost zone."""
+
+    zone: str
+    cost_factor: float
+    length_m: float
+
+
+@dataclass(frozen=True, slots=True)
 class GroundLine:
     """A polyline on the ground with its sampled long section.
 

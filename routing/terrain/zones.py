@@ -60,15 +60,21 @@ def zone_map(
     reach = max((abs(step) for move in moves for step in move), default=0)
     barred = np.zeros(terrain.shape, dtype=np.bool_)
     blocked = np.zeros(terrain.shape, dtype=np.uint32)
-    for shape in _barred_shapes(zones):
+    for shape in barred_shapes(zones):
         overlay = lay_over(terrain, shape, reach)
         barred |= overlay.inside
         blocked |= blocked_by(terrain, overlay, moves)
     return ZoneMap(zones, barred, blocked, _cost_factors(terrain, zones), tuple(notes))
 
 
-def _barred_shapes(zones: Sequence[Zone]) -> Iterator[Polygon | MultiPolygon]:
-    """Return the barred shapes, and where some meet also all joined: a seam between two of them is no way through."""
+def barred_shapes(zones: Sequence[Zone]) -> Iterator[Polygon | MultiPolygon]:
+    """Return the barred shapes, and where some meet also all joined: a seam between two of them is no way through.
+
+    Parameters
+    ----------
+    zones
+        Zones of any kind, in the DEM's CRS.
+    """
     shapes = [zone.shape for zone in zones if zone.kind == "barred"]
     yield from shapes
     if any(shapely.intersects(one, np.array(shapes[k + 1 :])).any() for k, one in enumerate(shapes[:-1])):
