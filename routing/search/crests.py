@@ -8,7 +8,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from routing.errors import InputError, Problem
-from routing.records import BoolArray
+from routing.records import BoolArray, FloatArray
 from routing.search import flooding
 from routing.search.grid import Grid
 from routing.search.moves import move_table
@@ -91,6 +91,34 @@ def _run(basin: flooding.Basin, cells: np.ndarray, tick: Callable[[int], None] |
             return None
         if tick is not None:
             tick(int(state[flooding.COUNT]))
+
+
+def crest_levels(grid: Grid, sources: BoolArray, *, tick: Callable[[int], None] | None = None) -> FloatArray:
+    """Find for each cell the lowest level that any way over the ground from the sources must rise to.
+
+    Exact for the bilinear surface through the cell centres; cells without ground are walls.
+
+    Parameters
+    ----------
+    sources : (rows, cols) bool array
+        Where ways start.
+    tick
+        Called between slices with the number of cells taken; may raise.
+
+    Returns
+    -------
+    (rows, cols) array
+        At least the ground of source and cell; ``inf`` where no ground joins a cell to a source.
+
+    Raises
+    ------
+    InputError
+        If the mask has another shape.
+    """
+    basin, cells = _start(grid, {}, _mask_of(grid, sources, "sources"))
+    _run(basin, cells, tick)
+    levels: FloatArray = basin.crest.reshape(grid.shape)
+    return levels
 
 
 def _highest_on_path(basin: flooding.Basin, cell: int) -> tuple[float, float, float]:
