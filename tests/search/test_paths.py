@@ -79,6 +79,17 @@ def test_along_the_edge_a_path_is_the_twins_place_by_place(seed, neighbours):
         before += length
 
 
+@pytest.mark.plain
+@pytest.mark.parametrize("end", [3.0, 7.0, 12.0])
+def test_the_highest_place_of_a_diagonal_has_its_closed_form(end):
+    """Ground 20 s - (20 - end) s^2: highest at s = 10 / (20 - end), between two of the places looked at; or at the end."""
+    grid = prepare_grid(np.array([[0.0, 10.0], [10.0, end]]), 3.0, 4.0, neighbours=8)
+    found = path_edges(grid, np.array([[0, 0], [1, 1]]), Limitation(along=True))
+    share = min(10.0 / (20.0 - end), 1.0)
+    assert found.at_length_m[-1] == pytest.approx(share * math.sqrt(25.0 + end**2))
+    assert found.at_level_m[-1] == pytest.approx(20.0 * share - (20.0 - end) * share**2)
+
+
 @settings(max_examples=25)
 @given(seeds, st.sampled_from([0.0, 0.05, 0.3]), st.booleans())
 def test_what_the_search_lets_through_its_own_figures_allow(seed, gradient, along):
