@@ -40,34 +40,43 @@ class Offer:
     proven: bool
 
 
-def _candidate(bench: Bench, pipe: Pipe, path: PathEdges, best: Found, count: int, duty: float | None) -> Candidate:
+def make_candidate(bench: Bench, pipe: Pipe, path: PathEdges, best: Found, count: int, duty: float | None) -> Candidate:
+    """Appraise a path with a pipe at a duty; ``best`` tells the bracket of the largest discharge of any path."""
     line = bench.section(path)
     appraisal = appraise(pipe, bench.profile(pipe, line), bench.conditions, duty)
     return Candidate(bench.route(path, line, best), pipe, count, appraisal)
 
 
-def _carries(candidate: Candidate, duty: float) -> bool:
-    """Whether the appraisal, on the sampled long section, confirms the duty."""
-    appraisal = candidate.appraisal
+def carries(appraisal: Appraisal, duty: float) -> bool:
+    """Whether an appraisal, on the sampled long section, confirms a duty."""
     return appraisal.reserve_left_m >= -_SLACK_M and appraisal.largest.energy_discharge_m3s >= duty
 
 
-def _for_duty(bench: Bench, pipe: Pipe, best: Found, count: int, duty: float) -> tuple[Candidate | None, bool]:
-    """Find the shortest route whose sampled long section carries a duty; tell whether it is proven outside."""
+def _missed_by(bench: Bench, pipe: Pipe, path: PathEdges, duty: float) -> float | None:
+    """Return ``None`` where the sampled long section of a path carries a duty; else its length over the path's."""
+    line = bench.section(path)
+    appraisal = appraise(pipe, bench.profile(pipe, line), bench.conditions, duty)
+    if carries(appraisal, duty):
+        return None
+    return float(line.chainage_m[-1]) / path.length_m
+
+
+def _path_for_duty(bench: Bench, pipe: Pipe, best: Found, duty: float) -> tuple[PathEdges | None, bool]:
+    """Find the shortest path whose sampled long section carries a duty; tell whether it is proven outside."""
+    if best.shortest is not None and _missed_by(bench, pipe, best.shortest, duty) is None:
+        return best.shortest, best.shortest_proven  # none is shorter: no search is needed
     stretch, proven = 1.0, True
     for _ in range(_ROUNDS):
         found = shortest_path(bench.job, bench.limit_at(pipe, duty, stretch))
         proven = proven and found.proven_outside
         if found.path is None:
             break
-        candidate = _candidate(bench, pipe, found.path, best, count, duty)
-        if _carries(candidate, duty):
-            return candidate, proven
-        stretch = max(stretch * 1.001, candidate.route.length_m / found.path.length_m * (1.0 + 1e-9))
-    if best.path is not None:
-        candidate = _candidate(bench, pipe, best.path, best, count, duty)
-        if _carries(candidate, duty):
-            return candidate, proven
+        longer = _missed_by(bench, pipe, found.path, duty)
+        if longer is None:
+            return found.path, proven
+        stretch = max(stretch * 1.001, longer * (1.0 + 1e-9))
+    if best.path is not None and _missed_by(bench, pipe, best.path, duty) is None:
+        return best.path, proven
     return None, proven
 
 
@@ -142,14 +151,14 @@ def _least_bad(bench: Bench, pipe: Pipe, best: Found, count: int, duty: float | 
     )
     if raised.path is not None:
         figures = replace(best, proven_outside=raised.proven_outside)
-        candidate = _candidate(bench, pipe, raised.path, figures, count, duty)
+        candidate = make_candidate(bench, pipe, raised.path, figures, count, duty)
         return Offer((candidate,), _shortfall(bench, pipe, duty, raised, limitation), raised.proven_outside)
     if duty is not None:  # more than the fall drives at any length: look at still water instead
         still = best if best.path is not None else least_raise(bench.job, bench.limit_at(pipe, 0.0))
         if still.path is not None:
             most = _most_driven(bench, pipe, still.path)
             figures = replace(best, proven_outside=still.proven_outside)
-            candidate = _candidate(bench, pipe, still.path, figures, count, duty)
+            candidate = make_candidate(bench, pipe, still.path, figures, count, duty)
             shortfall = _too_weak(pipe, duty, most)
             if best.path is None:
                 shortfall = _shortfall(bench, pipe, duty, still, limitation)
@@ -194,15 +203,15 @@ def offer_of(bench: Bench, pipe: Pipe) -> Offer:
             offer = _least_bad(bench, pipe, best, 1, None)
             return replace(offer, proven=offer.proven and best.proven_outside)
         path = _straightened(bench, pipe, best.path, best.low)
-        return Offer((_candidate(bench, pipe, path, best, 1, None),), None, best.proven_outside)
+        return Offer((make_candidate(bench, pipe, path, best, 1, None),), None, best.proven_outside)
     found, proven = [], best.proven_outside
     for count, duty in _counts(bench):
         if best.path is None or duty > best.high * (1.0 + bench.site.search.tolerance):
             continue
-        candidate, outside = _for_duty(bench, pipe, best, count, duty)
+        way, outside = _path_for_duty(bench, pipe, best, duty)
         proven = proven and outside
-        if candidate is not None:
-            found.append(candidate)
+        if way is not None:
+            found.append(make_candidate(bench, pipe, way, best, count, duty))
     if found:
         return Offer(tuple(found), None, proven)
     most_pipes = bench.site.demand.most_pipes
