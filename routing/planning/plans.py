@@ -217,4 +217,7 @@ def plan(site: Site, progress: Progress | None = None) -> Plan:
         warnings=(*scene.warnings, *hollow_note(scene, setting), *_proof_warnings(survey_)),
         timings_s=report.timings_s,
         zones=() if scene.zones is None else scene.zones.zones,
+        crossings=extras.crossings,
+        crossings_note=extras.crossings_note,
+        samples=extras.samples,
     )

@@ -6,9 +6,9 @@ siphon; `lowest_crest` floods the bilinear ground.
 
 from routing.search.choosing import Flow, Found, largest_discharge, least_raise, shortest_path
 from routing.search.compiling import cache_folder, kernels_ready
-from routing.search.crests import Crest, lowest_crest
+from routing.search.crests import Crest, crest_levels, lowest_crest
 from routing.search.divides import Pass, distinct_passes, divide_cells, join_paths
-from routing.search.ends import Job, OpenEnds
+from routing.search.ends import Job, OpenEnds, search_back, search_job, search_on
 from routing.search.gaps import moves_over_gaps
 from routing.search.grid import Grid, free_ratio, prepare_grid
 from routing.search.moves import move_list
@@ -29,6 +29,7 @@ __all__ = [
     "Reach",
     "border_band",
     "cache_folder",
+    "crest_levels",
     "distinct_passes",
     "divide_cells",
     "free_ratio",
@@ -44,7 +45,10 @@ __all__ = [
     "path_edges",
     "prepare_grid",
     "reach",
+    "search_back",
     "search_grid",
+    "search_job",
+    "search_on",
     "shortest_path",
     "weighted_path",
 ]

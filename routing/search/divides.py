@@ -2,8 +2,9 @@
 
 Ground belongs to whichever of the two a rising flood reaches it from first. Where both meet runs the divide: every
 route crosses it. The way over a place on it is as long as the shortest lengths to it and on from it. A place is a
-crossing of its own if joining it with a better one along the divide costs at least 5 % more length or half a metre
-more lift; else it is a wiggle of that one.
+crossing of its own if it is the shortest or the lowest for some way round, and if joining it with a better one along
+the divide costs at least 5 % more length than the longer of them or half a metre more lift than the lower; else it is
+a wiggle of that one. So a longer way over a lower place counts as another way.
 """
 
 from __future__ import annotations
@@ -79,8 +80,9 @@ def _beside(mask: BoolArray) -> BoolArray:
 def distinct_passes(divide: BoolArray, length_m: FloatArray, level_m: FloatArray, most: int = 9) -> list[Pass]:
     """Find the crossings of their own along the divide, the shortest first.
 
-    Two places are one crossing if some way along the divide joins them over places that are all less than 5 % longer
-    than the longer of the two and less than half a metre higher than the higher one. Places that no way is allowed
+    Looked at are the places that no neighbour on the divide undercuts in length, or none in height. Two of them are one
+    crossing if some way along the divide joins them over places that are all less than 5 % longer than the longer of
+    the two and less than half a metre higher than the lower one. Places that no way is allowed
     over have no length; there only the height counts.
 
     Parameters
@@ -100,7 +102,7 @@ def distinct_passes(divide: BoolArray, length_m: FloatArray, level_m: FloatArray
         return []
     pairs = _neighbours(divide, cells)
     kept: list[int] = []
-    for i in _shortest_of_their_own(lengths, levels, pairs):
+    for i in _least_of_their_own(lengths, levels, pairs):
         if len(kept) == most:
             break
         if not any(_joined(lengths, levels, pairs, i, other) for other in kept):
@@ -121,15 +123,20 @@ def _neighbours(divide: BoolArray, cells: NDArray[np.intp]) -> NDArray[np.intp]:
     return np.concatenate(found, axis=1)
 
 
-def _shortest_of_their_own(lengths: FloatArray, levels: FloatArray, pairs: NDArray[np.intp]) -> list[int]:
-    """Return the places that no neighbour undercuts, the shortest first."""
-    one, other = pairs
-    order = np.lexsort((levels, lengths))
-    place = np.empty(lengths.size, dtype=np.intp)
-    place[order] = np.arange(lengths.size)
-    undercut = np.zeros(lengths.size, dtype=np.bool_)
-    undercut[one[place[other] < place[one]]] = True
-    return [int(i) for i in order if not undercut[i] and np.isfinite(lengths[i])]
+def _undercut(order: NDArray[np.intp], pairs: NDArray[np.intp]) -> BoolArray:
+    """Return the places that have a neighbour before them in an order."""
+    place = np.empty(order.size, dtype=np.intp)
+    place[order] = np.arange(order.size)
+    undercut = np.zeros(order.size, dtype=np.bool_)
+    undercut[pairs[0, place[pairs[1]] < place[pairs[0]]]] = True
+    return undercut
+
+
+def _least_of_their_own(lengths: FloatArray, levels: FloatArray, pairs: NDArray[np.intp]) -> list[int]:
+    """Return the places that no neighbour undercuts in length, or none in height; the shortest first."""
+    by_length, by_level = np.lexsort((levels, lengths)), np.lexsort((lengths, levels))
+    least = ~_undercut(by_length, pairs) | ~_undercut(by_level, pairs)
+    return [int(i) for i in by_length if least[i] and np.isfinite(lengths[i])]
 
 
 def _joined(lengths: FloatArray, levels: FloatArray, pairs: NDArray[np.intp], one: int, other: int) -> bool:
@@ -137,7 +144,7 @@ def _joined(lengths: FloatArray, levels: FloatArray, pairs: NDArray[np.intp], on
     from scipy.sparse import coo_array  # noqa: PLC0415 - slow to import
     from scipy.sparse.csgraph import connected_components  # noqa: PLC0415
 
-    low = levels < max(levels[one], levels[other]) + MORE_LIFT_M
+    low = levels < min(levels[one], levels[other]) + MORE_LIFT_M
     near = ~np.isfinite(lengths) | (lengths < MORE_LENGTH * max(lengths[one], lengths[other]))
     passable = low & near
     kept = pairs[:, passable[pairs[0]] & passable[pairs[1]]]

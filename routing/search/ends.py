@@ -146,3 +146,13 @@ def most_by_energy(job: Job, found: Reach, limit_at: Callable[[float], Limitatio
         else:
             high = middle
     return high
+
+
+def search_on(job: Job, cell: CellLike, start_length_m: float, limitation: Limitation) -> NDArray[np.intp] | None:
+    """Search on from a cell that was reached at some length; return the cells of the path to the nearest goal."""
+    above = np.zeros(1) if job.open_ends is None else job.open_ends.goal_above_m
+    here = OpenEnds(np.array([cell], dtype=np.intp), np.array([start_length_m]), job.goals, above, job.goals_outside)
+    onward = replace(job, open_ends=here)
+    found = search_job(onward, limitation)
+    end = arrival(onward, found, limitation)
+    return None if end is None else found.path_to(*end.goal)

@@ -84,6 +84,18 @@ def test_much_length_parts_places_of_equal_height():
     assert len(passes_of(ridge({}, height=2.0), ceiling=4.0)[0]) == 1
 
 
+def test_a_longer_way_over_a_lower_place_is_another_way():
+    """A crest that falls steadily to one side: the shortest way and the lowest are not the same."""
+    ground = ridge({}, height=3.0)
+    ground[150:, 38:43] = np.linspace(3.0, 1.5, 50)[:, None]
+    found, _ = passes_of(ground, ceiling=4.0)
+    assert len(found) == 2
+    assert found[0].cell[0] == pytest.approx(100, abs=2)
+    assert found[1].level_m == pytest.approx(1.5)
+    ground[150:, 38:43] = np.linspace(3.0, 2.6, 50)[:, None]
+    assert len(passes_of(ground, ceiling=4.0)[0]) == 1
+
+
 def test_no_place_allowed_no_crossing():
     assert passes_of(ridge({}), ceiling=4.0)[0] == []
     assert distinct_passes(np.zeros((4, 4), bool), np.zeros((4, 4)), np.zeros((4, 4))) == []
