@@ -14,7 +14,7 @@ if TYPE_CHECKING:
     from routing.outputs.field import Field
     from routing.outputs.fields import SCHEME_FIELDS, TABLES
     from routing.outputs.folder import check_folder, write_run
-    from routing.outputs.geojson import layer_text, points_layer, routes_layer, water_layer
+    from routing.outputs.geojson import layer_text, points_layer, routes_layer, water_layer, zones_layer
     from routing.outputs.messages import error_document, error_text
     from routing.outputs.outlook_screen import outlook_summary
     from routing.outputs.reference import fields_page
@@ -52,6 +52,7 @@ _HOMES = {
     "summary": "screen",
     "water_layer": "geojson",
     "write_run": "folder",
+    "zones_layer": "geojson",
 }
 
 __all__ = [
@@ -81,6 +82,7 @@ __all__ = [
     "summary",
     "water_layer",
     "write_run",
+    "zones_layer",
 ]
 
 

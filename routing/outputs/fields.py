@@ -10,7 +10,14 @@ from typing import Any
 
 from routing.outputs.field import Field, Shown, Told
 from routing.outputs.hydraulic_fields import DISCHARGE_FIELDS, GEOMETRY_FIELDS, PRESSURE_FIELDS
-from routing.outputs.other_fields import CHECK_FIELDS, COST_FIELDS, POINT_FIELDS, SECTION_FIELDS, WATER_FIELDS
+from routing.outputs.other_fields import (
+    CHECK_FIELDS,
+    COST_FIELDS,
+    POINT_FIELDS,
+    SECTION_FIELDS,
+    WATER_FIELDS,
+    ZONE_FIELDS,
+)
 from routing.records import Scheme
 
 SchemeField = Field[Scheme]
@@ -166,6 +173,7 @@ TABLES: dict[str, dict[str, Field[Any]]] = {
         ("checks.csv", CHECK_FIELDS),
         ("costs.csv", COST_FIELDS),
         ("water.geojson", WATER_FIELDS),
+        ("zones.geojson", ZONE_FIELDS),
         ("points.geojson", POINT_FIELDS),
     )
 }

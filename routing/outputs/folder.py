@@ -17,7 +17,7 @@ from pathlib import Path
 from typing import Any
 
 from routing.errors import OutputError, Problem
-from routing.outputs.geojson import layer_text, points_layer, routes_layer, water_layer
+from routing.outputs.geojson import layer_text, points_layer, routes_layer, water_layer, zones_layer
 from routing.outputs.pictures.quiet import quietly
 from routing.outputs.pictures.subject import Wanted
 from routing.outputs.runfacts import RunFacts
@@ -32,6 +32,7 @@ RUN_FILE = "run.json"
 WRITERS: dict[str, Callable[[Plan], str]] = {
     "routes.geojson": lambda plan: layer_text(routes_layer(plan)),
     "water.geojson": lambda plan: layer_text(water_layer(plan)),
+    "zones.geojson": lambda plan: layer_text(zones_layer(plan)),
     "points.geojson": lambda plan: layer_text(points_layer(plan)),
     "schemes.csv": schemes_table,
     "sections.csv": sections_table,

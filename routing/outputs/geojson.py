@@ -1,4 +1,4 @@
-"""GeoJSON layers per RFC 7946: routes, water body, points.
+"""GeoJSON layers per RFC 7946: routes, water body, zones, points.
 
 WGS 84 longitude and latitude with 7 decimals, two ordinates, no ``crs`` member, flat scalar properties. Levels
 are properties in the DEM's own datum: a third ordinate would have to be a height above the ellipsoid (section 4).
@@ -14,7 +14,7 @@ from routing.outputs.field import row
 from routing.outputs.fields import SCHEME_FIELDS
 from routing.outputs.geometry import Drawn, draw_line, draw_point, draw_polygon
 from routing.outputs.lonlat import LonLat, joined
-from routing.outputs.other_fields import POINT_FIELDS, WATER_FIELDS, MapPoint
+from routing.outputs.other_fields import POINT_FIELDS, WATER_FIELDS, ZONE_FIELDS, MapPoint
 from routing.outputs.values import Value
 from routing.records import Plan, Route
 
@@ -52,6 +52,23 @@ def water_layer(plan: Plan) -> Layer:
         return _layer([])
     drawn = draw_polygon(body.shoreline, LonLat(plan.terrain.facts.crs_wkt))
     return _layer([("water-body", drawn, row(WATER_FIELDS, plan, body))])
+
+
+def zones_layer(plan: Plan) -> Layer:
+    """Return the zones as a FeatureCollection: one feature a zone, as mended and joined; none where there are none.
+
+    Raises
+    ------
+    OutputError
+        If a zone cannot be placed in WGS 84.
+    """
+    lonlat = LonLat(plan.terrain.facts.crs_wkt)
+    return _layer(
+        [
+            (f"zone-{number}", draw_polygon(zone.shape, lonlat), row(ZONE_FIELDS, plan, zone))
+            for number, zone in enumerate(plan.zones, start=1)
+        ]
+    )
 
 
 def points_layer(plan: Plan) -> Layer:

@@ -73,9 +73,9 @@ def _rings(polygon: Polygon, lonlat: LonLat) -> list[FloatArray]:
         if abs(path[-1, 0] - path[0, 0]) > _HALF_TURN:
             raise OutputError(
                 Problem(
-                    "the shoreline goes round a pole, which longitude and latitude cannot draw",
+                    "a polygon goes round a pole, which longitude and latitude cannot draw",
                     found=f"a ring of {len(xy)} points from latitude {path[:, 1].min():.3f} to {path[:, 1].max():.3f}",
-                    allowed="water bodies that hold neither pole",
+                    allowed="water bodies and zones that hold neither pole",
                     remedy="use a DEM that leaves the pole out",
                 )
             )

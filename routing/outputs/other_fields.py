@@ -1,11 +1,11 @@
-"""Fields of the files beside the schemes: long sections, checks, cost lines, water body, points."""
+"""Fields of the files beside the schemes: long sections, checks, cost lines, water body, zones, points."""
 
 from __future__ import annotations
 
 from dataclasses import dataclass
 
 from routing.outputs.field import Field
-from routing.records import Check, CostLine, Route, Scheme, WaterBody
+from routing.records import Check, CostLine, Route, Scheme, WaterBody, Zone
 
 #: What stands in place of a grade for a check that was not made.
 NOT_MADE = "not made"
@@ -227,6 +227,27 @@ WATER_FIELDS: tuple[Field[WaterBody], ...] = (
         None,
         "Whether a lower overflow outside the window read is ruled out.",
         lambda _, b: None if b.spill is None else b.spill.proven,
+    ),
+)
+
+ZONE_FIELDS: tuple[Field[Zone], ...] = (
+    Field("zone", "", "text", None, "Name of the zone in the site file.", lambda _, z: z.name),
+    Field("kind", "", "text", None, "`barred` (routes keep out) or `cost`.", lambda _, z: z.kind),
+    Field(
+        "cost_factor",
+        "",
+        "number",
+        3,
+        "What the price of laying is multiplied by there; empty for a barred zone.",
+        lambda _, z: z.cost_factor if z.kind == "cost" else None,
+    ),
+    Field(
+        "polygons",
+        "",
+        "integer",
+        None,
+        "How many polygons it has after mending and joining.",
+        lambda _, z: len(getattr(z.shape, "geoms", (z.shape,))),
     ),
 )
 

@@ -22,6 +22,7 @@ What is unknown, infinite or does not apply is empty in tables and `null` in JSO
 | --- | --- |
 | `routes.geojson` | one line feature a scheme, with the fields of `schemes.csv` |
 | `water.geojson` | the water body as polygons |
+| `zones.geojson` | the zones as polygons, as they were mended and joined; no feature where there are none |
 | `points.geojson` | intake, outlet, crest of each route, lowest possible crest, spill |
 | `schemes.csv` | one row a scheme, best first |
 | `sections.csv` | long section of each route, with levels and pressures of its best scheme |

@@ -126,7 +126,8 @@ def _named_files(site: Site) -> list[tuple[str, Path]]:
         ("intake point", site.intake.at.file),
         ("outlet point", site.outlet.at.file),
     )
-    return [(role, path) for role, path in named if path is not None]
+    zones = [(f"zone {zone.name}", zone.file) for zone in site.zones]
+    return [(role, path) for role, path in named if path is not None] + zones
 
 
 def _input(role: str, path: Path, sha256: str) -> dict[str, Any]:

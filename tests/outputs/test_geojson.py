@@ -8,13 +8,19 @@ import geopandas
 import numpy as np
 import pytest
 from pyproj import Geod
-from shapely import LineString, Polygon
+from shapely import LineString, MultiPolygon, Polygon, box
 from shapely.geometry import shape
 
 from routing.outputs.fields import SCHEME_FIELDS, TABLES
-from routing.outputs.geojson import layer_text, points_layer, routes_layer, routes_of, water_layer
+from routing.outputs.geojson import layer_text, points_layer, routes_layer, routes_of, water_layer, zones_layer
+from routing.records import Zone
 
-LAYERS = {"routes": routes_layer, "water": water_layer, "points": points_layer}
+LAYERS = {
+    "routes": routes_layer,
+    "water": water_layer,
+    "points": points_layer,
+    "zones": lambda plan: zones_layer(zoned(plan)),
+}
 TYPES = {
     "FeatureCollection", "Feature", "Point", "MultiPoint", "LineString", "MultiLineString", "Polygon",
     "MultiPolygon", "GeometryCollection",
@@ -139,6 +145,7 @@ def test_properties_are_the_fields(plan):
         ("schemes.csv", routes_layer(plan)),
         ("water.geojson", water_layer(plan)),
         ("points.geojson", points_layer(plan)),
+        ("zones.geojson", zones_layer(zoned(plan))),
     ):
         for feature in found["features"]:
             assert list(feature["properties"]) == list(TABLES[name])
@@ -197,6 +204,27 @@ def test_water_reads_back(plan, tmp_path):
     assert frame.spill_level_m[0] == 103.1
     assert not frame.spill_proven[0]
     assert frame.touches_dem_edge[0]
+
+
+def zoned(plan):
+    """The plan with a barred zone of two parts, one with a hole, and a cost zone."""
+    x, y = plan.setting.intake.x, plan.setting.intake.y
+    ring = box(x + 50.0, y - 40.0, x + 70.0, y + 40.0) - box(x + 55.0, y - 10.0, x + 60.0, y + 10.0)
+    bank = Zone("bank", "barred", 1.0, MultiPolygon([ring, box(x + 80.0, y, x + 90.0, y + 5.0)]))
+    return replace(plan, zones=(bank, Zone("bog", "cost", 2.5, box(x, y, x + 10.0, y + 10.0))))
+
+
+def test_zones_read_back(plan, tmp_path):
+    frame = read_back(tmp_path, zones_layer(zoned(plan)))
+    assert frame.geometry.is_valid.all()
+    for back, zone in zip(frame.to_crs("EPSG:32632").geometry, zoned(plan).zones, strict=True):
+        assert back.hausdorff_distance(zone.shape) < 0.02
+    assert list(frame.zone) == ["bank", "bog"]
+    assert list(frame.kind) == ["barred", "cost"]
+    assert list(frame.polygons) == [2, 1]
+    assert np.isnan(frame.cost_factor[0])
+    assert frame.cost_factor[1] == 2.5
+    assert zones_layer(plan) == {"type": "FeatureCollection", "features": []}
 
 
 def test_points_read_back(plan, tmp_path):

@@ -18,6 +18,8 @@ from routing.outputs.runfacts import (
     run_document,
     utc_text,
 )
+from routing.outputs.runfile import plan_document
+from routing.records import ZoneAsk
 
 
 def test_versions_are_those_installed():
@@ -69,6 +71,17 @@ def test_inputs_and_their_hashes(plan, tmp_path):
     # FIPS 180-4 example: SHA-256 of "abc"
     assert found[2]["sha256"] == "ba7816bf8f01cfea414140de5dae2223b00361a396177a9cb410ff61f20015ad"
     assert found[3]["sha256"] is None
+
+
+def test_the_files_of_zones_are_inputs(plan, tmp_path):
+    bank = tmp_path / "bank.geojson"
+    bank.write_bytes(b"abc")
+    site = replace(plan.site, zones=(ZoneAsk("bank", bank), ZoneAsk("bog", bank, kind="cost", cost_factor=2.0)))
+    found = inputs_document(replace(plan, site=site), RunFacts())[2:]
+    assert [row["role"] for row in found] == ["zone bank", "zone bog"]
+    assert all(row["sha256"].startswith("ba7816bf") for row in found)
+    told = plan_document(replace(plan, site=site))["site"]["zones"]
+    assert told[1] == {"name": "bog", "file": str(bank), "layer": None, "kind": "cost", "cost_factor": 2.0}
 
 
 def test_a_site_without_a_hash_is_hashed(plan):
