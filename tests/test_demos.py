@@ -239,5 +239,18 @@ def test_with_the_air_of_the_sea_the_near_place_will_do(plan_with):
     """Nothing but the air keeps the pipes from the near place."""
     assert "`pressure_pa = 101325.0`" in README
     plan = plan_with(barometric_low_pa="1500.0\npressure_pa = 101325.0")
-    working = [scheme for scheme in plan.schemes if scheme.verdict.grade != "unfit"]
-    assert {place_of(scheme.route) for scheme in working} == {"near"}
+    assert plan.feasible
+    assert place_of(plan.schemes[0].route) == "near"
+
+
+def test_the_three_places_that_will_do_are_three_crossings(vennaquil):
+    """In the order of their lengths; the near one is none at the lowest level."""
+    used = [crossing for crossing in vennaquil.crossings if crossing.used]
+    for crossing, name in zip(used, ("south", "middle", "north"), strict=True):
+        south, level = LOW_PLACES[name]
+        assert 8_450_000.0 - crossing.y == pytest.approx(south, abs=40.0)
+        assert crossing.level_m == pytest.approx(level, abs=0.25)
+    assert [crossing.length_m for crossing in used] == sorted(crossing.length_m for crossing in used)
+    working = [scheme for scheme in vennaquil.schemes if scheme.verdict.grade != "unfit"]
+    assert {scheme.route.crossing for scheme in working} == {crossing.name for crossing in used}
+    assert {place_of(scheme.route) for scheme in working} == {"south", "middle", "north"}
