@@ -11,7 +11,6 @@ from routing.records import BoolArray, FloatArray, Site, Terrain, WaterBody, Zon
 from routing.search import Grid
 from routing.terrain import xy_of
 
-
 CellLike = tuple[int, int]
 
 

@@ -14,8 +14,9 @@ from routing.planning.benches import Bench
 from routing.planning.candidates import Candidate, Offer, offer_of
 from routing.planning.extras import Extras, find_extras
 from routing.planning.hollows import hollow_note
+from routing.planning.placing import first_window, place_ends
 from routing.planning.reports import Progress, Reporter, reporter
-from routing.planning.scenes import Scene, first_window, grown_window, place_ends, survey
+from routing.planning.scenes import Scene, grown_window, survey
 from routing.planning.settings import resolve
 from routing.planning.zoning import check_lines
 from routing.records import Outlook, Plan, Scheme, Setting, Site, TerrainFacts

@@ -9,14 +9,18 @@ from typing import Literal
 
 import numpy as np
 
-from routing.errors import InputError, Problem, SiteError
+from routing.errors import Problem, SiteError
 from routing.planning.edges import gap_runs_out, outer_edge
 from routing.planning.ends import check_outlet, check_wet
 from routing.planning.grids import lay_zones, make_grid
+from routing.planning.intakes import intake_places
+from routing.planning.open_ends import Ground, IntakePlaces, OutletPlaces
+from routing.planning.outlets import outlet_places
+from routing.planning.placing import Ends, centre_of, shapes_inside
 from routing.planning.reports import Reporter
 from routing.planning.troubles import site_problem
 from routing.planning.zoning import check_free
-from routing.records import Cell, GridWindow, PlacedPoint, Saddle, Site, Terrain, WaterBody, ZoneMap
+from routing.records import BoolArray, Cell, GridWindow, PlacedPoint, Saddle, Site, Terrain, WaterBody, ZoneMap
 from routing.search import Crest, Grid, lowest_crest
 from routing.terrain import (
     Dem,
@@ -25,7 +29,6 @@ from routing.terrain import (
     cell_at,
     dry_cell,
     flat_water,
-    place_point,
     share_above_level,
     water_body,
     water_body_from_polygon,
@@ -33,7 +36,6 @@ from routing.terrain import (
     xy_of,
 )
 
-_LEAST_MARGIN_CELLS = 48
 # A window that must grow doubles its sides: few re-reads, and never four times more than is needed.
 _GROWTH = 2.0
 # A drawn shoreline and the cells of a DEM never agree at the rim; more than this is no rim.
@@ -41,18 +43,12 @@ _MUCH_ABOVE = 0.1
 
 
 @dataclass(frozen=True, slots=True)
-class Ends:
-    """Intake and outlet, placed on the DEM."""
-
-    intake: PlacedPoint
-    outlet: PlacedPoint
-
-
-@dataclass(frozen=True, slots=True)
 class Scene:
     """Everything about the ground of one job, in one window.
 
-    ``proven`` is false where the window could not be grown until water body and lowest crest fit.
+    ``proven`` is false where the window could not be grown until water body and lowest crest fit. ``intakes`` and
+    ``outlets`` hold the places for ends left open; the outlet's cell is then the one beyond the lowest crest, and the
+    intake's cell says which water.
     """
 
     dem: Dem
@@ -68,57 +64,8 @@ class Scene:
     proven: bool
     warnings: tuple[str, ...]
     zones: ZoneMap | None = None
-
-
-def place_ends(site: Site, dem: Dem) -> Ends:
-    """Place intake and outlet; both are tried, so that all problems show at once.
-
-    Raises
-    ------
-    SiteError
-        If either cannot be placed.
-    """
-    placed: list[PlacedPoint] = []
-    problems: list[Problem] = []
-    for what, ask in (("intake", site.intake.at), ("outlet", site.outlet.at)):
-        try:
-            placed.append(place_point(dem, ask, site.file, what))
-        except InputError as error:
-            problems.extend(error.problems)
-    if problems:
-        raise SiteError(*problems)
-    return Ends(*placed)
-
-
-def first_window(site: Site, dem: Dem, ends: Ends) -> GridWindow:
-    """Return the window to begin with: both ends with a margin of half their distance, or less where that is too much.
-
-    Raises
-    ------
-    SiteError
-        If even the least margin makes a window larger than the user's limit.
-    """
-    points = [(point.x, point.y) for point in (ends.intake, ends.outlet)]
-    rows, cols = np.array([dem.cell_of(*point) for point in points]).T
-    margin = max(_LEAST_MARGIN_CELLS, max(int(np.ptp(rows)), int(np.ptp(cols))) // 2)
-    most = site.search.largest_window_cells
-    while True:
-        window = dem.window_around(points, margin)
-        if window.rows * window.cols <= most:
-            return window
-        if margin == _LEAST_MARGIN_CELLS:
-            break
-        margin = max(_LEAST_MARGIN_CELLS, margin // 2)
-    raise SiteError(
-        site_problem(
-            site,
-            "search.largest_window_cells",
-            "Intake and outlet are too far apart for the part of the DEM that may be read at once.",
-            found=f"{window.rows} x {window.cols} cells around both, {window.rows * window.cols:,} in all",
-            allowed=f"at most {most:,} cells",
-            remedy="raise search.largest_window_cells (some 60 bytes of memory a cell), or take a DEM of larger cells",
-        )
-    )
+    intakes: IntakePlaces | None = None
+    outlets: OutletPlaces | None = None
 
 
 def grown_window(site: Site, dem: Dem, window: GridWindow) -> GridWindow | None:
@@ -199,11 +146,24 @@ def _look_at(site: Site, dem: Dem, ends: Ends, window: GridWindow, tick: Callabl
     terrain = with_voids_as_water(terrain, body)
     zones = lay_zones(site, terrain)
     grid = make_grid(site, terrain, zones)
-    goal = np.zeros(grid.shape, dtype=np.bool_)
-    goal[outlet] = True
-    border = window.open_border()
-    to_outlet = _saddle(terrain, lowest_crest(grid, body.cells, goal, open_border=border, tick=tick), "outlet")
-    edge = outer_edge(terrain)
+    border, edge = window.open_border(), outer_edge(terrain)
+    ground = Ground(terrain, grid, body, zones, present)
+    outlets = None
+    if site.outlet.kind != "point":
+        found = outlet_places(site, ground, ends.shapes, edge | (border & grid.has_ground))
+        if isinstance(found, Problem):
+            larger = grown_window(site, dem, window)
+            if larger is None:
+                raise SiteError(found)
+            return _look_at(site, dem, ends, larger, tick)
+        outlets = found
+    crest = lowest_crest(grid, body.cells, _goal(grid, outlet, outlets), open_border=border, tick=tick)
+    to_outlet = _saddle(terrain, crest, "outlet")
+    if outlets is not None:
+        outlet = outlets.lowest if crest is None else crest.goal
+        ends = replace(ends, outlet=centre_of(dem, terrain, outlet))
+        if ends.shapes is not None:
+            outlets = replace(outlets, more_outside=not shapes_inside(dem, terrain, ends.shapes))
     to_edge = None
     if edge.any() and not body.touches_edge:
         to_edge = _saddle(terrain, lowest_crest(grid, body.cells, edge, open_border=border, tick=tick), "edge")
@@ -223,7 +183,17 @@ def _look_at(site: Site, dem: Dem, ends: Ends, window: GridWindow, tick: Callabl
         proven=not body.touches_open_border and (window.whole or (to_outlet is not None and to_outlet.proven)),
         warnings=(),
         zones=zones,
+        intakes=intake_places(site, ground, intake),
+        outlets=outlets,
     )
+
+
+def _goal(grid: Grid, outlet: tuple[int, int], outlets: OutletPlaces | None) -> BoolArray:
+    if outlets is not None:
+        return outlets.mask(grid.shape)
+    goal = np.zeros(grid.shape, dtype=np.bool_)
+    goal[outlet] = True
+    return goal
 
 
 def _warnings(site: Site, scene: Scene) -> tuple[str, ...]:
@@ -282,7 +252,8 @@ def survey(site: Site, dem: Dem, ends: Ends, window: GridWindow, reporter: Repor
         if larger is None:
             break
         window = larger
-    check_outlet(site, scene.terrain, scene.grid, scene.body, scene.crest, (scene.intake_cell, scene.outlet_cell))
+    if scene.outlets is None:
+        check_outlet(site, scene.terrain, scene.grid, scene.body, scene.crest, (scene.intake_cell, scene.outlet_cell))
     for end, at in (("intake", (ends.intake, scene.intake_cell)), ("outlet", (ends.outlet, scene.outlet_cell))):
         check_free(site, scene.terrain, scene.zones, end, at)
     return replace(scene, warnings=_warnings(site, scene))

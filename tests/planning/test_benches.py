@@ -9,8 +9,9 @@ import numpy as np
 import pytest
 
 from routing.planning.benches import Bench, _corners
+from routing.planning.placing import first_window, place_ends
 from routing.planning.reports import Reporter
-from routing.planning.scenes import first_window, place_ends, survey
+from routing.planning.scenes import survey
 from routing.planning.settings import resolve
 from routing.search import Found, Limitation, shortest_path
 from routing.terrain import open_dem

@@ -9,8 +9,9 @@ import pytest
 
 from routing.errors import SiteError
 from routing.planning.ends import check_outlet, check_wet
+from routing.planning.placing import first_window, place_ends
 from routing.planning.reports import Reporter
-from routing.planning.scenes import first_window, place_ends, survey
+from routing.planning.scenes import survey
 from routing.terrain import open_dem
 
 

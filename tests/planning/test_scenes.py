@@ -10,8 +10,9 @@ import numpy as np
 import pytest
 
 from routing.errors import SiteError
+from routing.planning.placing import first_window, place_ends
 from routing.planning.reports import Reporter
-from routing.planning.scenes import first_window, grown_window, place_ends, survey
+from routing.planning.scenes import grown_window, survey
 from routing.terrain import open_dem
 
 STEP = 10.0 / 0.9996  # ground length of a 10 m cell at the central meridian of UTM

@@ -9,8 +9,9 @@ import pytest
 from pyproj import CRS
 
 from routing.errors import SiteError
+from routing.planning.placing import first_window, place_ends
 from routing.planning.reports import Reporter
-from routing.planning.scenes import first_window, place_ends, survey
+from routing.planning.scenes import survey
 from routing.planning.settings import resolve
 from routing.records import Water
 from routing.terrain import open_dem
