@@ -125,9 +125,9 @@ def test_bbox(layer):  # 5, 5.2
     assert ("bbox" in layer) == bool(layer["features"])
     for feature, positions in features_and_positions(layer):
         boxes = [layer["bbox"], *([feature["bbox"]] if "bbox" in feature else [])]
-        for box in boxes:
-            assert len(box) == 4
-            assert all(inside(p, box) for p in positions)
+        for bounds in boxes:
+            assert len(bounds) == 4
+            assert all(inside(p, bounds) for p in positions)
 
 
 def test_seven_decimals(text):  # 3.1.10, 11.2
