@@ -16,12 +16,13 @@ from routing.search import (
     PathEdges,
     Reach,
     distinct_passes,
-    divide_cells,
+    find_divide,
     join_paths,
     path_edges,
     search_back,
     search_job,
     search_on,
+    with_barred,
 )
 from routing.terrain import xy_of
 
@@ -90,8 +91,8 @@ def _why(found: int, tried: int) -> str:
         return "No place on the divide can be crossed under the suction limit."
     places = "1 place" if found == 1 else f"{found} places"
     return (
-        f"{places} on the divide can be crossed: no other keeps to the suction limit and is parted from the better ones "
-        "by 5 % more length or half a metre more lift."
+        f"{places} on the divide can be crossed: no other keeps to the suction limit and is parted from the better "
+        "ones by 5 % more length or half a metre more lift."
     )
 
 
@@ -104,17 +105,20 @@ def other_ways(bench: Bench, lead: Candidate) -> Ways:
     """
     job, grid = bench.job, bench.scene.grid
     limitation = _limitation(bench, lead)
-    there = search_job(job, limitation, whole=True)
-    # Seen from the outlet the ceiling would rise with length: a level one keeps these lengths lower bounds.
-    back = search_back(job, replace(limitation, ceiling_gradient=0.0, along=False))
-    total = there.length_m + back.length_m
-    total[total > limitation.longest_m] = np.inf
     outlet = np.zeros(grid.shape, dtype=np.bool_)
     outlet[job.goals[:, 0], job.goals[:, 1]] = True
-    divide = divide_cells(grid, bench.scene.body.cells, outlet)
+    divide = find_divide(grid, bench.scene.body.cells, outlet)
+    # Each part of a way keeps to its own side: a way to one place over another is no way of its own.
+    near = replace(job, grid=with_barred(grid, ~divide.water_side))
+    far = replace(job, grid=with_barred(grid, ~(divide.outlet_side | divide.cells)))
+    there = search_job(near, limitation, whole=True)
+    # Seen from the outlet the ceiling would rise with length: a level one keeps these lengths lower bounds.
+    back = search_back(far, replace(limitation, ceiling_gradient=0.0, along=False))
+    total = there.length_m + back.length_m
+    total[total > limitation.longest_m] = np.inf
     ways: list[Way] = []
-    for place in distinct_passes(divide, total, grid.level, _MOST_PASSES):
-        path = _over(job, there, place, limitation)
+    for place in distinct_passes(divide.cells, total, grid.level, _MOST_PASSES):
+        path = _over(far, there, place, limitation)
         ways.append(Way(_crossing(bench, place, f"C{len(ways) + 1}", path), path))
         if sum(way.path is not None for way in ways) == WANTED:
             break

@@ -7,10 +7,10 @@ siphon; `lowest_crest` floods the bilinear ground.
 from routing.search.choosing import Flow, Found, largest_discharge, least_raise, shortest_path
 from routing.search.compiling import cache_folder, kernels_ready
 from routing.search.crests import Crest, crest_levels, lowest_crest
-from routing.search.divides import Pass, distinct_passes, divide_cells, join_paths
+from routing.search.divides import Divide, Pass, distinct_passes, find_divide, join_paths
 from routing.search.ends import Job, OpenEnds, search_back, search_job, search_on
 from routing.search.gaps import moves_over_gaps
-from routing.search.grid import Grid, free_ratio, prepare_grid
+from routing.search.grid import Grid, free_ratio, prepare_grid, with_barred
 from routing.search.moves import move_list
 from routing.search.paths import PathEdges, border_band, may_escape, path_edges
 from routing.search.reaching import Limitation, Reach, reach, search_grid
@@ -18,6 +18,7 @@ from routing.search.weighing import height_penalty, weighted_path
 
 __all__ = [
     "Crest",
+    "Divide",
     "Flow",
     "Found",
     "Grid",
@@ -31,7 +32,7 @@ __all__ = [
     "cache_folder",
     "crest_levels",
     "distinct_passes",
-    "divide_cells",
+    "find_divide",
     "free_ratio",
     "height_penalty",
     "join_paths",
@@ -51,4 +52,5 @@ __all__ = [
     "search_on",
     "shortest_path",
     "weighted_path",
+    "with_barred",
 ]

@@ -2,9 +2,9 @@
 
 Ground belongs to whichever of the two a rising flood reaches it from first. Where both meet runs the divide: every
 route crosses it. The way over a place on it is as long as the shortest lengths to it and on from it. A place is a
-crossing of its own if it is the shortest or the lowest for some way round, and if joining it with a better one along
-the divide costs at least 5 % more length than the longer of them or half a metre more lift than the lower; else it is
-a wiggle of that one. So a longer way over a lower place counts as another way.
+crossing of its own if joining it with a better one along the divide costs at least 5 % more length or half a metre
+more lift, or if it is a real choice beside it: at least 5 % longer and half a metre lower. Else it is a wiggle of that
+one.
 """
 
 from __future__ import annotations
@@ -45,8 +45,25 @@ class Pass:
     length_m: float
 
 
-def divide_cells(grid: Grid, water: BoolArray, outlet: BoolArray) -> BoolArray:
-    """Return the cells on the water side of the divide, those that touch the outlet's side.
+@dataclass(frozen=True, slots=True)
+class Divide:
+    """The divide of a grid.
+
+    Attributes
+    ----------
+    cells : (rows, cols) bool array
+        Cells on the water side that touch the outlet's side.
+    water_side, outlet_side : (rows, cols) bool arrays
+        The two sides; cells that neither reaches belong to none.
+    """
+
+    cells: BoolArray
+    water_side: BoolArray
+    outlet_side: BoolArray
+
+
+def find_divide(grid: Grid, water: BoolArray, outlet: BoolArray) -> Divide:
+    """Find the divide between two seeds.
 
     Parameters
     ----------
@@ -62,8 +79,8 @@ def divide_cells(grid: Grid, water: BoolArray, outlet: BoolArray) -> BoolArray:
     mark[water] = WATER
     mark[outlet & ~water] = OUTLET
     dividing.spread_marks(rank.ravel(), mark.ravel(), grid.has_ground.ravel(), grid.shape[1])
-    divide: BoolArray = (mark == WATER) & _beside(mark == OUTLET)
-    return divide
+    water_side, outlet_side = mark == WATER, mark == OUTLET
+    return Divide(water_side & _beside(outlet_side), water_side, outlet_side)
 
 
 def _beside(mask: BoolArray) -> BoolArray:
@@ -82,8 +99,8 @@ def distinct_passes(divide: BoolArray, length_m: FloatArray, level_m: FloatArray
 
     Looked at are the places that no neighbour on the divide undercuts in length, or none in height. Two of them are one
     crossing if some way along the divide joins them over places that are all less than 5 % longer than the longer of
-    the two and less than half a metre higher than the lower one. Places that no way is allowed
-    over have no length; there only the height counts.
+    the two and less than half a metre higher than the higher one - unless the longer is 5 % longer and half a metre
+    lower than the other. Places that no way is allowed over have no length; there only the height counts.
 
     Parameters
     ----------
@@ -103,10 +120,11 @@ def distinct_passes(divide: BoolArray, length_m: FloatArray, level_m: FloatArray
     pairs = _neighbours(divide, cells)
     kept: list[int] = []
     for i in _least_of_their_own(lengths, levels, pairs):
-        if len(kept) == most:
-            break
-        if not any(_joined(lengths, levels, pairs, i, other) for other in kept):
+        same = next((k for k, other in enumerate(kept) if _one_crossing(lengths, levels, pairs, i, other)), None)
+        if same is None and len(kept) < most:
             kept.append(i)
+        elif same and levels[i] < levels[kept[same]] and lengths[i] < MORE_LENGTH * lengths[kept[same]]:
+            kept[same] = i  # hardly longer and lower; the first one stays, it is the shortest of all
     return [Pass((int(cells[i][0]), int(cells[i][1])), float(levels[i]), float(lengths[i])) for i in kept]
 
 
@@ -139,12 +157,19 @@ def _least_of_their_own(lengths: FloatArray, levels: FloatArray, pairs: NDArray[
     return [int(i) for i in by_length if least[i] and np.isfinite(lengths[i])]
 
 
-def _joined(lengths: FloatArray, levels: FloatArray, pairs: NDArray[np.intp], one: int, other: int) -> bool:
+def _one_crossing(lengths: FloatArray, levels: FloatArray, pairs: NDArray[np.intp], one: int, other: int) -> bool:
     """Whether two places are one crossing."""
+    short, long = sorted((one, other), key=lambda i: lengths[i])
+    choice = lengths[long] >= MORE_LENGTH * lengths[short] and levels[long] <= levels[short] - MORE_LIFT_M
+    return not choice and _joined(lengths, levels, pairs, one, other)
+
+
+def _joined(lengths: FloatArray, levels: FloatArray, pairs: NDArray[np.intp], one: int, other: int) -> bool:
+    """Whether a way along the divide joins two places without much more length or lift."""
     from scipy.sparse import coo_array  # noqa: PLC0415 - slow to import
     from scipy.sparse.csgraph import connected_components  # noqa: PLC0415
 
-    low = levels < min(levels[one], levels[other]) + MORE_LIFT_M
+    low = levels < max(levels[one], levels[other]) + MORE_LIFT_M
     near = ~np.isfinite(lengths) | (lengths < MORE_LENGTH * max(lengths[one], lengths[other]))
     passable = low & near
     kept = pairs[:, passable[pairs[0]] & passable[pairs[1]]]

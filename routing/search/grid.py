@@ -257,6 +257,17 @@ def prepare_grid(
     return Grid(ground, moves, flags, level, has_ground, step_x, step_y, neighbours)
 
 
+def with_barred(grid: Grid, barred: BoolArray) -> Grid:
+    """Return the grid with further cells barred."""
+    mask = _mask(barred, grid.shape, "barred")
+    if mask is None or not mask.any():
+        return grid
+    flags = grid.flags.copy()
+    flags[mask.ravel()] |= np.uint8(kernel.BARRED)
+    flags[_spread(mask, grid.reach).ravel()] |= np.uint8(kernel.CAREFUL)
+    return replace(grid, flags=flags)
+
+
 def weighted_grid(grid: Grid, cell_weight: ArrayLike) -> tuple[Grid, float]:
     """Return the grid with edges that count for more or less than their length, and the scale of its lengths.
 

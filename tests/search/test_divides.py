@@ -5,7 +5,7 @@ import pytest
 from scipy.ndimage import gaussian_filter
 from skimage.segmentation import watershed
 
-from routing.search import Limitation, distinct_passes, divide_cells, join_paths, prepare_grid, search_grid
+from routing.search import Limitation, distinct_passes, find_divide, join_paths, prepare_grid, search_grid
 from routing.search.dividing import spread_marks
 
 
@@ -33,7 +33,7 @@ def test_ground_without_data_parts_the_sides():
     ground = np.zeros((9, 11))
     ground[:, 5] = 3.0
     ground[0:4, 5] = np.nan
-    divide = divide_cells(prepare_grid(ground, 1.0, 1.0), *seeds(ground.shape, (4, 1), (4, 9)))
+    divide = find_divide(prepare_grid(ground, 1.0, 1.0), *seeds(ground.shape, (4, 1), (4, 9))).cells
     assert not divide[0:3].any()
     assert divide[5:, 4:7].any(axis=1).all()
 
@@ -51,7 +51,7 @@ def passes_of(ground, ceiling, intake=(100, 5), outlet=(100, 75)):
     grid = prepare_grid(ground, 1.0, 1.0)
     there = search_grid(grid, [intake], Limitation(ceiling)).length_m
     back = search_grid(grid, [outlet], Limitation(ceiling)).length_m
-    divide = divide_cells(grid, *seeds(ground.shape, intake, outlet))
+    divide = find_divide(grid, *seeds(ground.shape, intake, outlet)).cells
     return distinct_passes(divide, there + back, ground), there + back
 
 
@@ -94,6 +94,14 @@ def test_a_longer_way_over_a_lower_place_is_another_way():
     assert found[1].level_m == pytest.approx(1.5)
     ground[150:, 38:43] = np.linspace(3.0, 2.6, 50)[:, None]
     assert len(passes_of(ground, ceiling=4.0)[0]) == 1
+
+
+def test_of_two_places_on_one_slope_the_lower_stands_for_both():
+    ground = ridge({}, height=3.0)
+    ground[150:155, 38:43] = np.array([2.4, 1.6, 1.0, 1.6, 2.4])[:, None]  # a notch, far from the straight way
+    found, _ = passes_of(ground, ceiling=4.0)
+    assert len(found) == 2
+    assert found[1].level_m == pytest.approx(1.0)
 
 
 def test_no_place_allowed_no_crossing():
