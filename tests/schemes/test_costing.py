@@ -6,7 +6,7 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from routing.records import Pipe, PipePrices, PriceList
+from routing.records import Pipe, PipePrices, PriceList, ZoneLength
 from routing.schemes import price_scheme
 
 
@@ -34,6 +34,31 @@ def test_what_has_no_price_has_no_line():
     assert price_scheme(priced(), 100.0, 2, PriceList()).total == 0.0
     (line,) = price_scheme(priced(laying=10.0), 100.0, 2, PriceList()).lines
     assert (line.text, line.amount) == ("pipe laid", 2000.0)
+
+
+def test_zones_by_hand_to_the_cent():
+    """3 pipes, 14.20 a metre laid, all of it: 4 914.76. The zones add their difference, and nothing to the supply.
+
+    Bog: 31.07 m x 3 = 93.21 m at 14.20 x 1.6 = 22.72: 2 117.7312. Track: 12.50 m x 3 = 37.5 m at 14.20 x -0.25 =
+    -3.55: -133.125. Field of factor 1: no line.
+    """
+    zones = (ZoneLength("bog", 2.6, 31.07), ZoneLength("field", 1.0, 20.0), ZoneLength("track", 0.75, 12.50))
+    cost = price_scheme(priced(38.45, 14.20, 2100.50), 115.37, 3, PriceList("EUR"), zones)
+    assert [(line.text, line.amount) for line in cost.lines] == [
+        ("pipe supplied", 13_307.93),
+        ("pipe laid", 4_914.76),
+        ("laying in zone bog", 2_117.73),
+        ("laying in zone track", -133.12),  # half a cent, to the even one
+        ("fixed items of each pipe", 6_301.50),
+    ]
+    assert cost.lines[2].quantity == pytest.approx(93.21)
+    assert cost.lines[2].rate == pytest.approx(22.72)
+    assert cost.total == 26_508.80
+
+
+def test_zones_cost_nothing_where_laying_has_no_price():
+    zones = (ZoneLength("bog", 2.6, 31.07),)
+    assert price_scheme(priced(30.0), 100.0, 1, PriceList(), zones) == price_scheme(priced(30.0), 100.0, 1, PriceList())
 
 
 money = st.integers(0, 1_000_000).map(lambda cents: cents / 100)
