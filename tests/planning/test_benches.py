@@ -98,8 +98,10 @@ def test_the_job_is_that_of_the_scene(bench):
     job, scene = bench.job, bench.scene
     assert (job.source, job.goal) == ((20, 10), (20, 60)) == (scene.intake_cell, scene.outlet_cell)
     assert not job.band.any()  # the window is the whole DEM
-    assert bench.conditions.lowest.water_m == 99.0
-    assert bench.conditions.present.water_m == 100.0
+    conditions = bench.conditions_at(np.array([[20, 10], [20, 60]]))
+    for levels, water_m in ((conditions.lowest, 99.0), (conditions.present, 100.0)):
+        assert (levels.water_m, levels.outlet_m, levels.intake_mouth_m) == (water_m, 90.0, 95.0)
+    assert (conditions.limits, conditions.losses) == (bench.setting.limits, bench.setting.losses)
 
 
 def test_the_crown_lies_above_the_long_section(bench, ground):

@@ -46,7 +46,7 @@ def test_no_assumption_is_said_twice_and_none_is_lost(job):
 
 def test_every_pipe_gets_its_schemes_with_cost_and_one_name_a_path(job):
     plan = job.plan()
-    assert [scheme.rank for scheme in plan.schemes] == [1, 2]
+    assert [scheme.rank for scheme in plan.schemes] == list(range(1, len(plan.schemes) + 1))
     by_pipe = {scheme.pipe.name: scheme for scheme in plan.schemes}
     assert set(by_pipe) == {"P", "Q"}
     assert by_pipe["P"].cost.total == pytest.approx(30.0 * by_pipe["P"].route.length_m)
@@ -68,7 +68,7 @@ def test_progress_tells_each_stage_from_beginning_to_end_and_times_are_kept(job)
     plan = job.plan(lambda stage, share: told.append((stage, share)))
     stages = list(dict.fromkeys(stage for stage, _ in told))
     assert stages[0] == "ground and water body"
-    assert stages[-2:] == ["routes for pipe 1 of 2", "routes for pipe 2 of 2"]
+    assert [stage for stage in stages if stage.startswith("routes")] == [f"routes for pipe {n} of 2" for n in (1, 2)]
     for stage in stages:
         shares = [share for name, share in told if name == stage]
         assert (shares[0], shares[-1]) == (0.0, 1.0)
