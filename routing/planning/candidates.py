@@ -43,7 +43,7 @@ class Offer:
 def make_candidate(bench: Bench, pipe: Pipe, path: PathEdges, best: Found, count: int, duty: float | None) -> Candidate:
     """Appraise a path with a pipe at a duty; ``best`` tells the bracket of the largest discharge of any path."""
     line = bench.section(path)
-    appraisal = appraise(pipe, bench.profile(pipe, line), bench.conditions, duty)
+    appraisal = appraise(pipe, bench.profile(pipe, line), bench.conditions_at(path.cells), duty)
     return Candidate(bench.route(path, line, best), pipe, count, appraisal)
 
 
@@ -55,7 +55,7 @@ def carries(appraisal: Appraisal, duty: float) -> bool:
 def _missed_by(bench: Bench, pipe: Pipe, path: PathEdges, duty: float) -> float | None:
     """Return ``None`` where the sampled long section of a path carries a duty; else its length over the path's."""
     line = bench.section(path)
-    appraisal = appraise(pipe, bench.profile(pipe, line), bench.conditions, duty)
+    appraisal = appraise(pipe, bench.profile(pipe, line), bench.conditions_at(path.cells), duty)
     if carries(appraisal, duty):
         return None
     return float(line.chainage_m[-1]) / path.length_m

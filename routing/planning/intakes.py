@@ -5,7 +5,7 @@ from __future__ import annotations
 import numpy as np
 
 from routing.errors import Problem, SiteError
-from routing.planning.open_ends import CellLike, Ground, IntakePlaces, place_text
+from routing.planning.open_ends import CellLike, Ground, IntakePlaces, mouth_above_bed_m, place_text
 from routing.planning.troubles import site_problem
 from routing.records import BoolArray, Cell, Site
 from routing.terrain import dry_cell, water_cells
@@ -72,11 +72,6 @@ def deepest_bed_m(site: Site) -> float:
     if site.intake.mouth_level_m is not None:
         return site.intake.mouth_level_m
     return site.water.lowest_level_m - site.limits.least_submergence_m - mouth_above_bed_m(site)
-
-
-def mouth_above_bed_m(site: Site) -> float:
-    """Return how far the top of the mouth lies above the bed, for the largest of the pipes."""
-    return max(pipe.outside_diameter_m for pipe in site.pipes) + max(site.search.bed_offset_m, 0.0)
 
 
 def _deep_rim(site: Site, ground: Ground, water: BoolArray) -> BoolArray:

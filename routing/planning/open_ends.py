@@ -8,7 +8,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from routing.records import BoolArray, FloatArray, Site, Terrain, WaterBody, ZoneMap
-from routing.search import Grid
+from routing.search import Grid, OpenEnds
 from routing.terrain import xy_of
 
 CellLike = tuple[int, int]
@@ -96,3 +96,48 @@ def place_text(terrain: Terrain, cell: CellLike) -> str:
     x, y = xy_of(terrain, *cell)
     digits = 6 if abs(terrain.transform[0]) < 0.1 else 1
     return f"x {float(x):.{digits}f}, y {float(y):.{digits}f}"
+
+
+def mouth_above_bed_m(site: Site) -> float:
+    """Return how far the top of the mouth lies above the bed, for the largest of the pipes."""
+    return max(pipe.outside_diameter_m for pipe in site.pipes) + max(site.search.bed_offset_m, 0.0)
+
+
+def mouth_m(
+    site: Site, terrain: Terrain, places: IntakePlaces | None, intake: CellLike, known_m: float | None
+) -> float | None:
+    """Return the level of the top of the intake mouth; ``known_m`` unless the pipe lies on the bed from a cell on."""
+    if places is None or not places.measured or known_m is not None:
+        return known_m
+    return float(terrain.elevation_m[intake]) + mouth_above_bed_m(site)
+
+
+def join_ends(
+    intakes: IntakePlaces | None,
+    outlets: OutletPlaces | None,
+    ends: tuple[CellLike, CellLike],
+    tailwater_m: float | None,
+) -> OpenEnds | None:
+    """Return the ends as the search takes them; ``None`` where both are points.
+
+    Parameters
+    ----------
+    ends
+        Cells of intake and outlet, where one of them is a point.
+    tailwater_m
+        Water level outside any outlet.
+    """
+    if intakes is None and outlets is None:
+        return None
+    sources = np.array([ends[0]], dtype=np.intp) if intakes is None else intakes.cells
+    goals = np.array([ends[1]], dtype=np.intp) if outlets is None else outlets.cells
+    receiving = np.zeros(1) if outlets is None else outlets.axis_m
+    if outlets is not None and tailwater_m is not None:
+        receiving = np.maximum(receiving, tailwater_m)
+    return OpenEnds(
+        sources=sources,
+        start_length_m=np.full(len(sources), 0.0 if intakes is None else intakes.start_m),
+        goals=goals,
+        goal_above_m=receiving - receiving.min(),
+        more_outside=outlets is not None and outlets.more_outside,
+    )

@@ -12,6 +12,7 @@ from routing.planning.barriers import barrier_cells
 from routing.planning.bars import with_bars_told
 from routing.planning.benches import Bench
 from routing.planning.candidates import Candidate, Offer, offer_of
+from routing.planning.choices import choice_notes, settled
 from routing.planning.extras import Extras, find_extras
 from routing.planning.hollows import hollow_note
 from routing.planning.placing import first_window, place_ends
@@ -133,7 +134,7 @@ def _scheme(survey_: _Survey, bench: Bench, candidate: Candidate) -> Scheme:
             count=candidate.count,
             appraisal=candidate.appraisal,
             cost=cost,
-            conditions=bench.conditions,
+            conditions=bench.conditions_at(candidate.route.cells),
             required_m3s=site.demand.discharge_m3s,
             budget=site.demand.budget,
             vertical_error_m=scene.terrain.facts.vertical_error_m,
@@ -161,6 +162,15 @@ def _extras(
     )
     with report.stage("other ways over", 6 * survey_.scene.terrain.elevation_m.size) as tick:
         return find_extras(replace(bench, tick=tick), lead, candidates, None)
+
+
+def _choices(survey_: _Survey, bench: Bench, schemes: tuple[Scheme, ...], report: Reporter) -> tuple[str, ...]:
+    """Say how ends left open were chosen."""
+    scene = survey_.scene
+    if not schemes or (scene.intakes is None and scene.outlets is None):
+        return ()
+    with report.stage("second best ends", 4 * scene.terrain.elevation_m.size) as tick:
+        return choice_notes(replace(bench, tick=tick), schemes[0], lambda found: _ranked(survey_, bench, tuple(found)))
 
 
 def _proof_warnings(survey_: _Survey) -> tuple[str, ...]:
@@ -206,6 +216,10 @@ def plan(site: Site, progress: Progress | None = None) -> Plan:
     extras, candidates = _extras(survey_, bench, candidates, report)
     schemes = _ranked(survey_, bench, (*candidates, *extras.candidates))
     check_lines(scene.zones, (scheme.route for scheme in schemes))
+    choices = _choices(survey_, bench, schemes, report)
+    if schemes:
+        setting = settled(bench, schemes[0].route)
+        scene = replace(scene, intake_cell=setting.intake_cell, outlet_cell=setting.outlet_cell)
     return Plan(
         site=site,
         terrain=scene.terrain,
@@ -221,4 +235,5 @@ def plan(site: Site, progress: Progress | None = None) -> Plan:
         crossings=extras.crossings,
         crossings_note=extras.crossings_note,
         samples=extras.samples,
+        choice_notes=choices,
     )

@@ -7,6 +7,7 @@ from dataclasses import dataclass
 
 from routing.errors import InputError, Problem, SiteError
 from routing.hydraulics import standard_pressure_pa, water_at
+from routing.planning.intakes import deepest_bed_m
 from routing.planning.scenes import Scene
 from routing.planning.troubles import site_problem
 from routing.records import Levels, Limits, Setting, Site
@@ -62,6 +63,8 @@ def _air(site: Site, scene: Scene) -> _Air | Problem:
 
 def _outlet_m(site: Site, scene: Scene) -> tuple[float, str]:
     ground = float(scene.terrain.elevation_m[scene.outlet_cell])
+    if site.outlet.kind != "point":
+        return _open_outlet_m(site, ground)
     if site.outlet.level_m is not None:
         return (
             site.outlet.level_m,
@@ -71,7 +74,28 @@ def _outlet_m(site: Site, scene: Scene) -> tuple[float, str]:
     return level, f"The outlet's axis is at {level:.2f} m: {site.outlet.height_above_ground_m:g} m above the DEM there."
 
 
+def _open_outlet_m(site: Site, ground_m: float) -> tuple[float, str]:
+    """Return the level of the axis at one of the places for the outlet, and how it follows at each of them."""
+    if site.outlet.level_m is not None:
+        return site.outlet.level_m, f"The outlet's axis is at {site.outlet.level_m:g} m, wherever it lies."
+    height = site.outlet.height_above_ground_m
+    return ground_m + height, f"The outlet's axis is {height:g} m above the DEM, wherever it lies."
+
+
+def _shore_mouth_m(site: Site) -> tuple[float | None, tuple[str, ...]]:
+    """Return the level of the mouth where it is stated; without, it follows from the bed at the place chosen."""
+    mouth = site.intake.mouth_level_m
+    if site.intake.underwater_length_m is not None:
+        return mouth, ()
+    deepest = f"{deepest_bed_m(site):.2f} m"
+    return mouth, (
+        f"The pipe lies on the bed from its mouth to the shore; its mouth lies where the bed is at or below {deepest}.",
+    )
+
+
 def _mouth_m(site: Site, scene: Scene) -> tuple[float | None, tuple[str, ...]]:
+    if site.intake.kind == "shore":
+        return _shore_mouth_m(site)
     ground = float(scene.terrain.elevation_m[scene.intake_cell])
     if site.intake.mouth_level_m is not None:
         mouth = site.intake.mouth_level_m
@@ -130,13 +154,15 @@ def _lowest_problem(site: Site, scene: Scene) -> list[Problem]:
 
 
 def _moved(scene: Scene) -> list[str]:
-    """Say how far the ends were moved to the centres of their cells."""
+    """Say how far the ends that are points were moved to the centres of their cells."""
     terrain, notes = scene.terrain, []
     a, _, c, _, e, f = terrain.transform
     for what, point, (row, col) in (
         ("intake", scene.ends.intake, scene.intake_cell),
         ("outlet", scene.ends.outlet, scene.outlet_cell),
     ):
+        if (scene.intakes if what == "intake" else scene.outlets) is not None:
+            continue
         across = (point.x - (c + a * (col + 0.5))) / a * terrain.step_x_m[row]
         down = (point.y - (f + e * (row + 0.5))) / e * terrain.step_y_m[row]
         far = float((across**2 + down**2) ** 0.5)
@@ -172,6 +198,10 @@ def resolve(site: Site, scene: Scene) -> Setting:
         gravity_ms2=site.limits.gravity_ms2,
     )
     notes = [f"Air pressure {air.pressure_pa / 1e3:.2f} kPa: {air.source}.", outlet_note, *mouth_notes, *_moved(scene)]
+    if scene.intakes is not None:
+        notes.append(f"Water may be taken at {len(scene.intakes.cells)} cells of the water.")
+    if scene.outlets is not None:
+        notes.append(scene.outlets.note)
     if site.water.present_level_m is None:
         notes.append(f"The present water level is {scene.present_m:.2f} m, read off the DEM.")
     return Setting(

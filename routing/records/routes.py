@@ -59,6 +59,13 @@ class Route:
         The sampled long section: map position, 3-D ground length from the intake, bilinear ground level.
     crest_index
         Position of the highest ground in the samples.
+    crossing
+        Name of the crossing that it takes, or "".
+    outlet_m, mouth_m
+        Level of its outlet's axis, and of the top of its intake mouth (``None``: unknown).
+    underwater_length_m
+        Length of pipe from the mouth to the shore at the lowest level, part of the chainage; ``None`` where the intake
+        is a point.
     """
 
     name: str
@@ -70,6 +77,9 @@ class Route:
     ground_m: FloatArray
     proof: Proof
     crossing: str = ""
+    outlet_m: float | None = None
+    mouth_m: float | None = None
+    underwater_length_m: float | None = None
 
     @property
     def length_m(self) -> float:
