@@ -1,7 +1,8 @@
-"""Makes the elevation model of Brackenmere, an invented reservoir behind an old earth embankment.
+"""Makes the elevation model and the zones of Brackenmere, an invented reservoir behind an old earth embankment.
 
 Nothing here is drawn by chance: the hills are sums of cosines with fixed directions, so that every run gives the
 same cells. Run it as ``python make_dem.py [target.tif]``; without a target it writes ``dem.tif`` beside itself.
+The zones are written into the same folder.
 
 Levels are in metres of an invented local datum. The map position is in the open North Sea, so that nobody takes
 Brackenmere for a real place.
@@ -10,12 +11,14 @@ Brackenmere for a real place.
 from __future__ import annotations
 
 import itertools
+import json
 import sys
 from pathlib import Path
 
 import numpy as np
 import rasterio
 from numpy.typing import NDArray
+from pyproj import Transformer
 from rasterio import Affine
 
 Grid = NDArray[np.float64]
@@ -36,6 +39,12 @@ SPILLWAY = (
     (392.0, 168.0, 100.2),
     (446.0, 232.0, 93.4),
 )
+
+#: Zones by file, with the east and south of their corners: a strip of the embankment, and land below it.
+ZONES = {
+    "orchid_bank.geojson": ((331.0, 206.0), (341.0, 204.0), (341.0, 256.0), (331.0, 260.0)),
+    "wet_meadow.geojson": ((362.0, 225.0), (400.0, 228.0), (405.0, 265.0), (365.0, 275.0)),
+}
 
 
 def positions() -> tuple[Grid, Grid]:
@@ -115,5 +124,22 @@ def write(target: Path) -> None:
         sink.set_band_description(1, "ground and water surface, invented")
 
 
+def zone_text(corners: tuple[tuple[float, float], ...]) -> str:
+    """Return a zone as GeoJSON: one polygon in longitude and latitude."""
+    lonlat = Transformer.from_crs(CRS, "OGC:CRS84", always_xy=True)
+    places = [lonlat.transform(WEST_M + east, NORTH_M - south) for east, south in (*corners, corners[0])]
+    ring = [[round(lon, 7), round(lat, 7)] for lon, lat in places]
+    feature = {"type": "Feature", "properties": {}, "geometry": {"type": "Polygon", "coordinates": [ring]}}
+    return json.dumps({"type": "FeatureCollection", "features": [feature]}) + "\n"
+
+
+def write_zones(folder: Path) -> None:
+    """Write the zones."""
+    for name, corners in ZONES.items():
+        (folder / name).write_text(zone_text(corners), encoding="utf-8", newline="\n")
+
+
 if __name__ == "__main__":
-    write(Path(sys.argv[1]) if len(sys.argv) > 1 else Path(__file__).with_name("dem.tif"))
+    dem = Path(sys.argv[1]) if len(sys.argv) > 1 else Path(__file__).with_name("dem.tif")
+    write_zones(dem.parent)
+    write(dem)

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import importlib.util
+import json
 import tomllib
 from pathlib import Path
 
@@ -10,6 +11,7 @@ import numpy as np
 import pytest
 import rasterio
 from scipy import ndimage
+from shapely import LineString, Point, Polygon
 
 from routing.hydraulics import (
     allowed_underpressure_pa,
@@ -55,6 +57,27 @@ def test_the_script_makes_the_committed_file(maker, ground, tmp_path):
         np.testing.assert_array_equal(again.read(1), kept.read(1))
         assert again.profile == kept.profile
         assert again.units == kept.units == ("m",)
+
+
+def test_the_script_makes_the_committed_zones(maker, tmp_path):
+    maker.write_zones(tmp_path)
+    assert sorted(path.name for path in tmp_path.iterdir()) == sorted(path.name for path in DEMO.glob("*.geojson"))
+    for path in tmp_path.iterdir():
+        made, kept = (json.loads(file.read_text(encoding="utf-8")) for file in (path, DEMO / path.name))
+        rings = [found["features"][0]["geometry"].pop("coordinates")[0] for found in (made, kept)]
+        assert made == kept
+        np.testing.assert_allclose(rings[0], rings[1], atol=1.5e-7)  # the last decimal may follow the PROJ release
+
+
+def test_the_zones_leave_the_ends_free_and_lie_in_the_way(site, maker):
+    bank, meadow = site.zones
+    assert (bank.name, bank.kind) == ("orchid bank", "barred")
+    assert (meadow.name, meadow.kind, meadow.cost_factor) == ("wet meadow", "cost", 1.6)
+    ends = [(end.at.x - maker.WEST_M, maker.NORTH_M - end.at.y) for end in (site.intake, site.outlet)]
+    shapes = {name: Polygon(corners) for name, corners in maker.ZONES.items()}
+    assert LineString(ends).intersects(shapes["orchid_bank.geojson"])
+    assert LineString(ends).intersects(shapes["wet_meadow.geojson"])
+    assert not any(shape.buffer(2.0).contains(Point(end)) for shape in shapes.values() for end in ends)
 
 
 def test_it_is_small_and_said_to_be_invented(site):
