@@ -117,7 +117,7 @@ def other_ways(bench: Bench, lead: Candidate) -> Ways:
     total = there.length_m + back.length_m
     total[total > limitation.longest_m] = np.inf
     ways: list[Way] = []
-    for place in distinct_passes(divide.cells, total, grid.level, _MOST_PASSES):
+    for place in distinct_passes(divide.cells, total, divide.level_m, _MOST_PASSES):
         path = _over(far, there, place, limitation)
         ways.append(Way(_crossing(bench, place, f"C{len(ways) + 1}", path), path))
         if sum(way.path is not None for way in ways) == WANTED:

@@ -89,9 +89,11 @@ def find_extras(
     """
     known = {one.pipe.name: one.route.proof for one in candidates}
     ways = other_ways(bench, lead)
+    named = tuple(_near(bench, one, ways) for one in candidates)
+    taken = {one.route.crossing for one in named}
     fresh: list[Candidate] = []
-    for way in ways.ways[1:]:
-        if way.path is not None:
+    for way in ways.ways:
+        if way.path is not None and way.crossing.name not in taken:
             served = _served(bench, way.path, known) or [_at_lead(bench, lead, way.path, known)]
             fresh += _named(served, way.crossing.name)
     samples = []
@@ -102,9 +104,9 @@ def find_extras(
         samples.append(Sample(lead.pipe.name, sampled.weight, one.route, one.appraisal, missing, same))
         if cost_factor is not None and not same:
             fresh += _served(bench, sampled.path, known)
-    named = tuple(_near(bench, one, ways) for one in (*candidates, *fresh))
+    fresh = [_near(bench, one, ways) for one in fresh]
     crossings = tuple(way.crossing for way in ways.ways)
-    return Extras(named[len(candidates) :], crossings, ways.note, tuple(samples)), named[: len(candidates)]
+    return Extras(tuple(fresh), crossings, ways.note, tuple(samples)), named
 
 
 def _near(bench: Bench, candidate: Candidate, ways: Ways) -> Candidate:

@@ -55,11 +55,15 @@ class Divide:
         Cells on the water side that touch the outlet's side.
     water_side, outlet_side : (rows, cols) bool arrays
         The two sides; cells that neither reaches belong to none.
+    level_m : (rows, cols) float64 array
+        How high a step over the divide must rise from each of its cells: the cell's own ground or the lowest beside it
+        on the outlet's side, whichever is higher. Without meaning elsewhere.
     """
 
     cells: BoolArray
     water_side: BoolArray
     outlet_side: BoolArray
+    level_m: FloatArray
 
 
 def find_divide(grid: Grid, water: BoolArray, outlet: BoolArray) -> Divide:
@@ -80,18 +84,24 @@ def find_divide(grid: Grid, water: BoolArray, outlet: BoolArray) -> Divide:
     mark[outlet & ~water] = OUTLET
     dividing.spread_marks(rank.ravel(), mark.ravel(), grid.has_ground.ravel(), grid.shape[1])
     water_side, outlet_side = mark == WATER, mark == OUTLET
-    return Divide(water_side & _beside(outlet_side), water_side, outlet_side)
+    beside = _lowest_beside(np.where(outlet_side, grid.level, np.inf))
+    return Divide(
+        cells=water_side & np.isfinite(beside),
+        water_side=water_side,
+        outlet_side=outlet_side,
+        level_m=np.maximum(grid.level, beside),
+    )
 
 
-def _beside(mask: BoolArray) -> BoolArray:
-    """Cells with an 8-neighbour in the mask."""
-    padded = np.pad(mask, 1)
-    rows, cols = mask.shape
-    near = np.zeros(mask.shape, dtype=np.bool_)
+def _lowest_beside(level: FloatArray) -> FloatArray:
+    """Lowest of each cell's 8 neighbours and itself."""
+    rows, cols = level.shape
+    padded = np.pad(level, 1, constant_values=np.inf)
+    lowest = np.full(level.shape, np.inf)
     for down in (0, 1, 2):
         for right in (0, 1, 2):
-            near |= padded[down : down + rows, right : right + cols]
-    return near
+            np.minimum(lowest, padded[down : down + rows, right : right + cols], out=lowest)
+    return lowest
 
 
 def distinct_passes(divide: BoolArray, length_m: FloatArray, level_m: FloatArray, most: int = 9) -> list[Pass]:

@@ -23,6 +23,9 @@ Tick = Callable[[int], None]
 # About 30 ms of work: short enough for progress and Ctrl-C, long enough that the calls cost nothing.
 _SLICE_CELLS = 200_000
 _FIRST_POOL = 16_384
+# Queues of more buckets than this take longer to go through than the cells: such levels are a mark for nodata.
+_MOST_BUCKETS = 20_000_000
+_MANY_BUCKETS = 100_000
 
 
 @dataclass(frozen=True, slots=True)
@@ -173,10 +176,34 @@ def _rules(grid: Grid, limitation: Limitation) -> kernel.Rules:
     )
 
 
+def _longest_edge(grid: Grid) -> float:
+    """Return a bound on the length of any edge, weight included.
+
+    The whole range of levels serves where it makes no large queue; else the steepest steps along rows and columns.
+    """
+    plan, weight = float(grid.ground.plan.max()), float(grid.ground.weight.max(initial=1.0))
+    loose = float(np.hypot(plan, np.ptp(grid.level))) * weight
+    if loose < _MANY_BUCKETS * grid.least_step_m:
+        return loose
+    down, right = (float(np.abs(np.diff(grid.level, axis=axis)).max(initial=0.0)) for axis in (0, 1))
+    rise = float(np.max(np.abs(grid.moves.drow) * down + np.abs(grid.moves.dcol) * right))
+    return min(loose, float(np.hypot(plan, rise)) * weight)
+
+
 def _new_queue(grid: Grid, cells: NDArray[np.int32], starts: FloatArray) -> kernel.Queue:
     """Return an empty queue with a ring long enough that no label laps the bucket at hand."""
     width = bucket_width(grid)
-    longest_edge = float(np.hypot(grid.ground.plan.max(), np.ptp(grid.level)) * grid.ground.weight.max(initial=1.0))
+    longest_edge = _longest_edge(grid)
+    if longest_edge > _MOST_BUCKETS * width:
+        raise InputError(
+            Problem(
+                "the levels differ too much for so short steps",
+                found=f"an edge of up to {longest_edge:g} m, steps from {grid.least_step_m:g} m",
+                allowed=f"edges up to {_MOST_BUCKETS:,} times the shortest step",
+                remedy="set cells without ground to NaN",
+                key="ground_m",
+            )
+        )
     ring = 1 << int(np.ceil(np.log2(longest_edge / width + 3.0)))
     pool = _FIRST_POOL + 2 * cells.size
     return kernel.Queue(

@@ -16,6 +16,8 @@ from routing.search.grid import weighted_grid
 from routing.search.paths import PathEdges, path_edges
 from routing.search.reaching import Limitation, search_grid
 
+_HOPELESS_M = 30.0
+
 
 def weighted_path(job: Job, cell_weight: ArrayLike) -> tuple[PathEdges, float] | None:
     """Find the path with the least weighted length, ceilings left aside.
@@ -45,6 +47,9 @@ def weighted_path(job: Job, cell_weight: ArrayLike) -> tuple[PathEdges, float] |
     return path_edges(job.grid, found.path_to(*job.goal), Limitation(along=True)), cost * scale
 
 
-def height_penalty(level_m: FloatArray, limit_m: float, weight_per_m: float) -> FloatArray:
-    """Return weights that add ``weight_per_m`` to each metre of route for every metre of ground above a limit."""
-    return 1.0 + weight_per_m * np.maximum(level_m - limit_m, 0.0)
+def height_penalty(level_m: FloatArray, limit_m: FloatArray | float, weight_per_m: float) -> FloatArray:
+    """Return weights that add ``weight_per_m`` to each metre of route for every metre of ground above a limit.
+
+    No more than 30 m are counted: no siphon lifts so high, and the queue grows with the largest weight.
+    """
+    return 1.0 + weight_per_m * np.clip(level_m - limit_m, 0.0, _HOPELESS_M)

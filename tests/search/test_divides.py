@@ -38,6 +38,18 @@ def test_ground_without_data_parts_the_sides():
     assert divide[5:, 4:7].any(axis=1).all()
 
 
+def test_a_step_over_the_divide_rises_to_the_lower_neighbour():
+    ground = np.array([[0.0, 3.0, 4.0, 1.0]] * 3)
+    ground[1, 2] = 3.5
+    divide = find_divide(prepare_grid(ground, 1.0, 1.0), *seeds(ground.shape, (1, 0), (1, 3)))
+    rows, cols = np.nonzero(divide.cells)
+    for row, col in zip(rows, cols, strict=True):
+        near = ground[max(row - 1, 0) : row + 2, max(col - 1, 0) : col + 2]
+        other = divide.outlet_side[max(row - 1, 0) : row + 2, max(col - 1, 0) : col + 2]
+        assert divide.level_m[row, col] == max(ground[row, col], near[other].min())
+    assert rows.size >= 3
+
+
 def ridge(gaps, *, height=6.0, rows=200, cols=81):
     """A ridge across the middle with gaps: {row: level}."""
     ground = np.zeros((rows, cols))
@@ -51,8 +63,8 @@ def passes_of(ground, ceiling, intake=(100, 5), outlet=(100, 75)):
     grid = prepare_grid(ground, 1.0, 1.0)
     there = search_grid(grid, [intake], Limitation(ceiling)).length_m
     back = search_grid(grid, [outlet], Limitation(ceiling)).length_m
-    divide = find_divide(grid, *seeds(ground.shape, intake, outlet)).cells
-    return distinct_passes(divide, there + back, ground), there + back
+    divide = find_divide(grid, *seeds(ground.shape, intake, outlet))
+    return distinct_passes(divide.cells, there + back, divide.level_m), there + back
 
 
 def test_gaps_far_apart_are_crossings_of_their_own():
