@@ -8,6 +8,7 @@ from __future__ import annotations
 
 from typing import Any
 
+from routing.outputs.end_fields import END_FIELDS
 from routing.outputs.field import Field, Shown, Told
 from routing.outputs.hydraulic_fields import DISCHARGE_FIELDS, GEOMETRY_FIELDS, PRESSURE_FIELDS
 from routing.outputs.other_fields import (
@@ -161,7 +162,7 @@ _PROOF: tuple[SchemeField, ...] = (
 
 #: Every field of a scheme, in the order of the files.
 SCHEME_FIELDS: tuple[SchemeField, ...] = (
-    *_IDENTITY, *_VERDICT, *DISCHARGE_FIELDS, *GEOMETRY_FIELDS, *PRESSURE_FIELDS, *_COST, *_PROOF,
+    *_IDENTITY, *_VERDICT, *DISCHARGE_FIELDS, *GEOMETRY_FIELDS, *END_FIELDS, *PRESSURE_FIELDS, *_COST, *_PROOF,
 )  # fmt: skip
 
 #: The fields of every file, by file and by name.

@@ -74,6 +74,8 @@ def zones_layer(plan: Plan) -> Layer:
 def points_layer(plan: Plan) -> Layer:
     """Return intake, outlet, the crest of each route, the lowest crest and the spill as Point features.
 
+    Intake and outlet are those of the best scheme; where they were left open, each route's own are there too.
+
     Raises
     ------
     OutputError
@@ -90,7 +92,10 @@ def points_layer(plan: Plan) -> Layer:
 
 def routes_of(plan: Plan) -> list[Route]:
     """Return each route of the plan once, in the order of the ranking."""
-    return list({scheme.route.name: scheme.route for scheme in plan.schemes}.values())
+    found: dict[str, Route] = {}
+    for scheme in plan.schemes:
+        found.setdefault(scheme.route.name, scheme.route)
+    return list(found.values())
 
 
 def _points(plan: Plan) -> dict[str, MapPoint]:
@@ -100,6 +105,7 @@ def _points(plan: Plan) -> dict[str, MapPoint]:
         "outlet": MapPoint("outlet", "outlet", setting.outlet.x, setting.outlet.y, setting.lowest.outlet_m),
     }
     for route in routes_of(plan):
+        points |= _own_ends(plan, route)
         k = route.crest_index
         points[f"crest-{route.name}"] = MapPoint(
             "crest",
@@ -117,6 +123,20 @@ def _points(plan: Plan) -> dict[str, MapPoint]:
     for ident, kind, name, saddle in saddles:
         if saddle is not None:
             points[ident] = MapPoint(kind, name, saddle.x, saddle.y, saddle.level_m, proven=saddle.proven)
+    return points
+
+
+def _own_ends(plan: Plan, route: Route) -> dict[str, MapPoint]:
+    """Return the ends of a route, where they were left open."""
+    name, points = route.name, {}
+    if plan.site.intake.kind != "point":
+        place = float(route.x[0]), float(route.y[0])
+        points[f"intake-{name}"] = MapPoint("intake", f"intake of route {name}", *place, route.mouth_m, name, 0.0)
+    if plan.site.outlet.kind != "point":
+        place = float(route.x[-1]), float(route.y[-1])
+        points[f"outlet-{name}"] = MapPoint(
+            "outlet", f"outlet of route {name}", *place, route.outlet_m, name, route.length_m
+        )
     return points
 
 

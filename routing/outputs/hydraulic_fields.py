@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import numpy as np
 
+from routing.outputs.end_fields import receiving_level
 from routing.outputs.field import Field, Shown, Told
 from routing.records import Scheme
 
@@ -187,14 +188,7 @@ GEOMETRY_FIELDS: tuple[SchemeField, ...] = (
         lambda t, _: t.setting.lowest.water_m,
     ),
     Field("present_level_m", "m", "number", 3, "Level of the water body now.", lambda t, _: t.setting.present.water_m),
-    Field(
-        "receiving_level_m",
-        "m",
-        "number",
-        3,
-        "The higher of outlet axis and tailwater.",
-        lambda t, _: t.setting.lowest.receiving_m,
-    ),
+    Field("receiving_level_m", "m", "number", 3, "The higher of outlet axis and tailwater.", receiving_level),
     Field(
         "lift_m",
         "m",

@@ -124,7 +124,7 @@ def _named_files(site: Site) -> list[tuple[str, Path]]:
     named = (
         ("water polygon", site.water.polygon_file),
         ("intake point", site.intake.at.file),
-        ("outlet point", site.outlet.at.file),
+        (f"outlet {site.outlet.kind}", site.outlet.at.file),
     )
     zones = [(f"zone {zone.name}", zone.file) for zone in site.zones]
     return [(role, path) for role, path in named if path is not None] + zones

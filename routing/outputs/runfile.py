@@ -46,6 +46,7 @@ def plan_document(plan: Plan, run: RunFacts | None = None) -> dict[str, Any]:
         "headline": headline(plan),
         "schemes": [_scheme(plan, scheme) for scheme in plan.schemes],
         "shortfalls": plain(plan.shortfalls),
+        "choices": plain(plan.choice_notes),
         **_ground(plan),
         "assumptions": plain(plan.assumptions),
         "warnings": plain([*plan.warnings, *_price_warning(plan)]),

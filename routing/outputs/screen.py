@@ -56,6 +56,8 @@ def summary(plan: Plan, *, top: int = MOST_ROWS) -> RenderableType:
     best = best_scheme(plan)
     if best is not None:
         parts += ["", heading(f"Scheme {best.rank}"), bullets(_best_notes(best))]
+    if plan.choice_notes:
+        parts += ["", heading("Ends left open"), bullets(plan.choice_notes)]
     parts += _shortfall_notes(plan)
     if plan.warnings:
         parts += ["", heading("Warnings"), bullets(plan.warnings, "in run.json")]

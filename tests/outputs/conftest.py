@@ -108,6 +108,7 @@ def make_route(name: str, place: Place, bend: float, *, whole_dem: bool = True) 
         chainage,
         z,
         Proof(float(chainage[-1]) + 0.4, straight, 1.0275, whole_dem, 0.0605, 0.0606, text),
+        underwater_length_m=12.5,
     )
 
 
