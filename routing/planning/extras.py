@@ -10,7 +10,11 @@ from routing.planning.benches import Bench
 from routing.planning.candidates import Candidate, carries, make_candidate
 from routing.planning.samples import sampled_paths
 from routing.records import Crossing, FloatArray, Pipe, Proof, Sample
-from routing.search import Found, PathEdges
+from routing.schemes import SLIM_RESERVE_M
+from routing.search import Found, PathEdges, shortest_path
+
+# The sampled long section is a little longer than the path on the graph: so much is kept in hand for it.
+_MARGIN_M = 0.02
 
 
 @dataclass(frozen=True, slots=True)
@@ -56,6 +60,27 @@ def _served(bench: Bench, path: PathEdges, known: dict[str, Proof]) -> list[Cand
     return served
 
 
+def _sturdier(bench: Bench, candidates: Iterable[Candidate], known: dict[str, Proof]) -> list[Candidate]:
+    """Beside each route that just carries its duty, find the shortest that leaves the reserve that is wanted.
+
+    The shortest route for a duty climbs as high as it may to save a few metres; a little more length often keeps much
+    more water above the crest.
+    """
+    found = []
+    for one in candidates:
+        duty, left = one.appraisal.duty_m3s, one.appraisal.reserve_left_m
+        if duty is None or not 0.0 <= left < SLIM_RESERVE_M:
+            continue
+        lower = bench.limit_at(one.pipe, duty).raised(-(SLIM_RESERVE_M + _MARGIN_M))
+        path = shortest_path(bench.job, lower).path
+        if path is None:
+            continue
+        sturdy = make_candidate(bench, one.pipe, path, _bracket(known[one.pipe.name]), one.count, duty)
+        if sturdy.appraisal.reserve_left_m >= SLIM_RESERVE_M:
+            found.append(sturdy)
+    return found
+
+
 def _at_lead(bench: Bench, lead: Candidate, path: PathEdges, known: dict[str, Proof]) -> Candidate:
     """Appraise a further path for the leading pipe, count and duty, whatever comes of it."""
     proof = _bracket(known[lead.pipe.name])
@@ -96,6 +121,7 @@ def find_extras(
         if way.path is not None and way.crossing.name not in taken:
             served = _served(bench, way.path, known) or [_at_lead(bench, lead, way.path, known)]
             fresh += _named(served, way.crossing.name)
+    fresh += _sturdier(bench, named, known)
     samples = []
     for sampled in sampled_paths(bench, lead, cost_factor):
         same = bench.names.get(sampled.path.cells.tobytes(), "")

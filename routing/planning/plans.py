@@ -15,12 +15,13 @@ from routing.planning.candidates import Candidate, Offer, offer_of
 from routing.planning.choices import choice_notes, settled
 from routing.planning.extras import Extras, find_extras
 from routing.planning.hollows import hollow_note
+from routing.planning.lowest import water_at_lowest
 from routing.planning.placing import first_window, place_ends
 from routing.planning.reports import Progress, Reporter, reporter
 from routing.planning.scenes import Scene, grown_window, survey
 from routing.planning.settings import resolve
 from routing.planning.zoning import check_lines
-from routing.records import Outlook, Plan, Scheme, Setting, Site, TerrainFacts
+from routing.records import FloatArray, Outlook, Plan, Scheme, Setting, Site, TerrainFacts
 from routing.schemes import Matter, judge, price_scheme, rank
 from routing.terrain import inspect, lengths_in_zones, open_dem
 
@@ -161,7 +162,14 @@ def _extras(
         one for one in candidates if one.pipe == best.pipe and one.count == best.count and one.route is best.route
     )
     with report.stage("other ways over", 6 * survey_.scene.terrain.elevation_m.size) as tick:
-        return find_extras(replace(bench, tick=tick), lead, candidates, None)
+        return find_extras(replace(bench, tick=tick), lead, candidates, _cost_factor(survey_.scene))
+
+
+def _cost_factor(scene: Scene) -> FloatArray | None:
+    """Return what a metre costs in each cell, where zones make that differ."""
+    if scene.zones is None or bool(np.all(scene.zones.cost_factor == 1.0)):
+        return None
+    return scene.zones.cost_factor
 
 
 def _choices(survey_: _Survey, bench: Bench, schemes: tuple[Scheme, ...], report: Reporter) -> tuple[str, ...]:
@@ -236,4 +244,5 @@ def plan(site: Site, progress: Progress | None = None) -> Plan:
         crossings_note=extras.crossings_note,
         samples=extras.samples,
         choice_notes=choices,
+        lowest_water=water_at_lowest(site, scene, setting),
     )

@@ -43,8 +43,12 @@ def refusal(job, *, plan=True):
 
 
 def only(plan):
-    (scheme,) = plan.schemes
-    return scheme
+    """The best scheme; any other is over another crossing, or leaves more reserve on a longer route."""
+    best = plan.schemes[0]
+    for other in plan.schemes[1:]:
+        sturdier = other.appraisal.reserve_left_m > best.appraisal.reserve_left_m
+        assert other.route.crossing != best.route.crossing or sturdier
+    return best
 
 
 # ---------------------------------------------------------------- the clean job, by hand
