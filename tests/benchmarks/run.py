@@ -18,14 +18,16 @@ from dataclasses import dataclass
 from pathlib import Path
 
 import numpy as np
+import shapely
 import skimage
 from grounds import bank, hills
 from skimage.graph import MCP_Geometric
 
 from routing.hydraulics import discharge_under, energy_discharge_m3s, pe_pipe, suction_ceiling, water_at
-from routing.records import Levels, Limits, Losses
+from routing.records import GridWindow, Levels, Limits, Losses, Terrain, TerrainFacts
 from routing.schemes import crown_offset_m
-from routing.search import Flow, Job, Limitation, border_band, largest_discharge, prepare_grid, search_grid
+from routing.search import Flow, Job, Limitation, border_band, largest_discharge, move_list, prepare_grid, search_grid
+from routing.terrain.clipping import blocked_by, lay_over
 
 SIZE = 1000
 ROOT = Path(__file__).resolve().parents[2]
@@ -120,6 +122,37 @@ def largest_searches():
         yield Row(f"largest discharge over one free search, {name}", ratio, f"at most {bar:g}", ratio <= bar, note)
 
 
+def star_bar():
+    """A barred star with some 2,000 boundary cells beside the source, laid over a grid of 1 m cells."""
+    angle = np.linspace(0.0, 2.0 * np.pi, 2000, endpoint=False)
+    radius = (0.25 + 0.02 * np.sin(9.0 * angle)) * SIZE
+    ring = np.column_stack([0.7 * SIZE + radius * np.cos(angle), 0.5 * SIZE + radius * np.sin(angle)])
+    transform = (1.0, 0.0, 0.0, 0.0, -1.0, float(SIZE))
+    facts = TerrainFacts(
+        "made", "", "", "", SIZE, SIZE, transform, "EPSG:32615", "", "metre", "m", "", "", 1.0, 0.0, None, None, "ground",
+        "surface",
+    )  # fmt: skip
+    flat, ones = np.zeros((SIZE, SIZE)), np.ones(SIZE)
+    window = GridWindow(0, 0, SIZE, SIZE, SIZE, SIZE)
+    terrain = Terrain(flat, flat == 0.0, ones, ones, transform, window, facts)
+    moves = move_list(16)
+    return lambda: blocked_by(terrain, lay_over(terrain, shapely.Polygon(ring), 2), moves)
+
+
+def bars():
+    lay = star_bar()
+    laying = best_of(lay, 3)
+    blocked, ground = lay(), hills(SIZE)
+    free, with_bars = (prepare_grid(ground, 1.0, 1.0, blocked_moves=bits) for bits in (None, blocked))
+    source = [(SIZE // 2, SIZE // 4)]
+    for name, limitation in (("free ground", Limitation()), ("ceiling at 30 m of 40", Limitation(30.0, 1e-3))):
+        without = best_of(lambda limitation=limitation: search_grid(free, source, limitation))
+        within = best_of(lambda limitation=limitation: search_grid(with_bars, source, limitation))
+        ratio = within / without
+        note = f"{within:.3f} s; laying the bar over cells and moves, not counted, {laying:.2f} s"
+        yield Row(f"search with a barred zone over one without, {name}", ratio, "at most 1.3", ratio <= 1.3, note)
+
+
 def run_command(*words):
     subprocess.run([sys.executable, *words], check=True, stdout=subprocess.DEVNULL, stderr=subprocess.DEVNULL, cwd=ROOT)
 
@@ -175,7 +208,7 @@ def main():
     parser.add_argument("--write", type=Path, help="file to write the table to")
     ask = parser.parse_args()
     rows = []
-    for part in (against_skimage, memory, largest_searches, first_call, start_up):
+    for part in (against_skimage, memory, bars, largest_searches, first_call, start_up):
         for row in part():
             rows.append(row)
             print(f"{row.what}: {row.measured:.2f} ({row.bar}) {'ok' if row.met else 'NOT MET'}; {row.note}", flush=True)
