@@ -4,14 +4,18 @@ import os
 import shutil
 import stat
 from datetime import UTC, datetime
+from functools import partial
 from pathlib import Path
 
 import pytest
 
 from routing.errors import OutputError
 from routing.outputs import folder as folder_module
-from routing.outputs.folder import RUN_FILE, WRITERS, check_folder, write_run
+from routing.outputs.folder import RUN_FILE, WRITERS, check_folder
 from routing.outputs.runfacts import RunFacts
+
+#: What is drawn does not matter here, and takes long.
+write_run = partial(folder_module.write_run, pictures="none")
 
 
 @pytest.fixture
@@ -254,3 +258,43 @@ def test_a_failure_of_the_file_system_says_what_to_do(plan, target, monkeypatch)
 def test_check_folder_changes_nothing(target):
     assert check_folder(target) == Path(os.path.realpath(target))
     assert not target.exists()
+
+
+@pytest.mark.parametrize(
+    ("wanted", "names_of_pictures"),
+    [
+        ("overview", ["overview"]),
+        ("all", ["overview", "R1", "R2"]),
+    ],
+)
+def test_pictures_are_part_of_the_run(plan, target, wanted, names_of_pictures):
+    paths = folder_module.write_run(plan, target, pictures=wanted)
+    drawn = [f"{name}.{kind}" for name in names_of_pictures for kind in ("png", "svg")]
+    assert paths == [target / name for name in (*WRITERS, *drawn, "pictures.txt", RUN_FILE)]
+    listed = {file["name"]: file for file in json.loads((target / RUN_FILE).read_text())["files"]}
+    for name in drawn:
+        data = (target / name).read_bytes()
+        assert listed[name]["sha256"] == hashlib.sha256(data).hexdigest()
+        assert data.startswith(b"\x89PNG" if name.endswith("png") else b"<?xml")
+
+
+def test_a_picture_is_drawn_unless_told_otherwise(plan, target):
+    folder_module.write_run(plan, target)
+    assert (target / "overview.png").is_file()
+    assert not (target / "R1.png").exists()
+
+
+def test_a_run_with_pictures_is_replaced_by_one_without(plan, target):
+    folder_module.write_run(plan, target)
+    write_run(plan, target, replace=True)
+    assert set(contents(target)) == {*WRITERS, RUN_FILE}
+
+
+@pytest.mark.parametrize("fault", [KeyboardInterrupt, MemoryError])
+def test_a_drawing_that_breaks_off_leaves_nothing(plan, target, monkeypatch, fault):
+    from routing.outputs.pictures import files
+
+    monkeypatch.setattr(files, "picture", failing(fault))
+    with pytest.raises(fault):
+        folder_module.write_run(plan, target)
+    assert names(target.parent) == []

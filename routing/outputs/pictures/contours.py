@@ -18,6 +18,8 @@ from routing.records import FloatArray
 COLOUR = "#5A4636"
 _MOST_LEVELS = 16.0
 _MOST_LABELS = 14
+#: Room between two labels, in pixels: neighbours would hide each other's lines.
+_GAP_PX = 16.0
 #: Shortest line that is labelled, in pixels; where along a line a label is tried.
 _LEAST_PX = 110.0
 _SPOTS = (0.5, 0.3, 0.7, 0.15, 0.85, 0.4, 0.6)
@@ -96,15 +98,15 @@ def _label(axes: Axes, labels: Labels, level_m: float, line: FloatArray, interva
         va="center",
         rotation_mode="anchor",
         zorder=5,
-        bbox={"facecolor": "#EFEBE6", "edgecolor": "none", "alpha": 0.85, "pad": 0.4},
+        bbox={"facecolor": "#EFEBE6", "edgecolor": "none", "alpha": 0.95, "pad": 0.4},
     )
     for share in _SPOTS:
         k = int(inside[int(share * (len(inside) - 1))])
         before, after = pixels[max(0, k - 6)], pixels[min(len(pixels) - 1, k + 6)]
         slope = np.degrees(np.arctan2(after[1] - before[1], after[0] - before[0]))
         text.set_position((line[k, 0], line[k, 1]))
-        text.set_rotation(float((slope + 90.0) % 180.0 - 90.0))
-        if labels.claim(text):
+        text.set_rotation(90.0 - float((90.0 - slope) % 180.0))
+        if labels.claim(text, _GAP_PX):
             return True
     text.remove()
     return False

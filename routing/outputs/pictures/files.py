@@ -75,4 +75,3 @@ def _described(svg: bytes, text: str) -> bytes:
     head = head.replace("<svg ", '<svg role="img" aria-labelledby="picture-title picture-text" ', 1)
     head = head.replace("<title>", '<title id="picture-title">', 1)
     return f'{head}{mark}\n <desc id="picture-text">{escape(text)}</desc>{rest}'.encode()
-

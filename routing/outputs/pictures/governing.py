@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
-from routing.outputs.wording import figures, fixed, least_shortfall, litres, sentence, still_water_lift_m
+import math
+
+from routing.outputs.wording import figures, fixed, litres, sentence, still_water_lift_m
 from routing.records import Plan, Scheme
 
 Rows = list[tuple[str, str]]
@@ -38,7 +40,7 @@ def _cost(scheme: Scheme) -> str:
     return f"{amount} (invented prices)" if cost.invented else amount
 
 
-def lacking_text(plan: Plan) -> str:
-    """Return why there is no scheme to draw."""
-    shortfall = least_shortfall(plan)
-    return "No route works." if shortfall is None else f"No route works. {sentence(shortfall.text)}"
+def lacking_texts(plan: Plan) -> list[str]:
+    """Return why there is no scheme to draw: a text for each pipe, those that miss least first."""
+    ordered = sorted(plan.shortfalls, key=lambda s: math.inf if s.raise_m is None else s.raise_m)
+    return [sentence(shortfall.text) for shortfall in ordered] or ["No route works."]

@@ -32,6 +32,8 @@ class MarkLook:
 
 INTAKE, OUTLET = MarkLook("o", PAPER, 6.5), MarkLook("s", PAPER, 6.0)
 CREST, CROSSING, CROSSING_UNUSED = MarkLook("^", YELLOW, 6.0), MarkLook("D", SKY, 4.8), MarkLook("D", PAPER, 4.0)
+#: Largest mark in the legend, whose lines are close.
+_LEGEND_SIZE = 8.0
 LOWEST_CREST = MarkLook("o", "none", 11.0)
 
 
@@ -164,4 +166,6 @@ def _mark_entries(marks: list[Mark]) -> Iterator[Entry]:
     for mark in marks:
         if mark.legend not in told:
             told.add(mark.legend)
-            yield Entry(Line2D([], [], linestyle="none", **_marker(mark.look)), mark.legend)
+            handle = Line2D([], [], linestyle="none", **_marker(mark.look))
+            handle.set_markersize(min(mark.look.size, _LEGEND_SIZE))
+            yield Entry(handle, mark.legend)

@@ -115,7 +115,9 @@ def _zone(axes: Axes, zone: Zone, frame: Frame) -> Iterator[Entry]:
         return
     axes.add_patch(patch)
     name = f"“{shown(zone.name)}”" if zone.name else "zone"
-    yield Entry(Patch(**look), f"barred: {name}" if barred else f"cost x {figures(zone.cost_factor)}: {name}")
+    # The patch of the legend is small: its hatch has to be denser to show.
+    handle = Patch(**(look | {"hatch": "/////" if barred else "...."}))
+    yield Entry(handle, f"barred: {name}" if barred else f"cost x {figures(zone.cost_factor)}: {name}")
 
 
 def draw_grid(axes: Axes, facts: TerrainFacts, frame: Frame, ruler: Ruler) -> None:
@@ -148,8 +150,7 @@ def is_angular(facts: TerrainFacts) -> bool:
 
 
 def unit_text(facts: TerrainFacts) -> str:
-    """Return the map's unit, short for metres."""
+    """Return the map's unit as a plural, short for metres."""
     unit = shown(facts.horizontal_unit)
-    return {"metre": "m", "meter": "m", "degree": "degrees", "grad": "grads", "radian": "radians"}.get(
-        unit.lower(), unit
-    )
+    plurals = {"metre": "m", "meter": "m", "degree": "degrees", "grad": "grads", "radian": "radians"}
+    return plurals.get(unit.lower(), unit.replace("foot", "feet"))

@@ -13,7 +13,7 @@ from routing.outputs.cautions import INVENTED_PRICES
 from routing.outputs.pictures import style
 from routing.outputs.pictures.contours import label_contours
 from routing.outputs.pictures.framing import frame_of
-from routing.outputs.pictures.governing import governing_rows, lacking_text
+from routing.outputs.pictures.governing import governing_rows, lacking_texts
 from routing.outputs.pictures.mapmarks import draw_routes
 from routing.outputs.pictures.mapview import Entry, draw_grid, draw_ground
 from routing.outputs.pictures.placing import Labels
@@ -151,29 +151,42 @@ def _section(figure: Figure, subject: Subject, scheme: Scheme, renderer: Rendere
     name_axes(axes, subject, ruler)
     labels = Labels(axes, renderer)
     entries = draw_section(axes, subject, section, scheme, labels)
-    duty = litres(scheme.appraisal.duty.discharge_m3s)
-    title = f"Long section of {scheme_text(scheme)}, {duty} each pipe at the lowest level"
-    stated = f"vertical exaggeration {times:g}" if times != 1.0 else "no vertical exaggeration"
-    left, top = SECTION_IN[0], SECTION_IN[1] + SECTION_IN[3] + 0.07
-    text = ruler.shortened(f"{title}; {stated}", 8.0, SECTION_IN[2], bold=True)
-    _write(figure, text, left, top, 8.0, fontweight="bold")
+    _section_title(figure, scheme, times, ruler)
     legend = Legend(
         figure,
         [entry.handle for entry in entries],
         [entry.text for entry in entries],
         loc="upper left",
-        bbox_to_anchor=(left / style.PAGE_IN[0], (SECTION_IN[1] - 0.40) / style.PAGE_IN[1]),
+        bbox_to_anchor=(SECTION_IN[0] / style.PAGE_IN[0], (SECTION_IN[1] - 0.40) / style.PAGE_IN[1]),
         ncols=(len(entries) + 1) // 2,
         **_LEGEND,  # type: ignore[arg-type]
     )
     figure.add_artist(legend)
 
 
+def _section_title(figure: Figure, scheme: Scheme, times: float, ruler: Ruler) -> None:
+    """Name the scheme on the left and the vertical exaggeration, which must never be cut off, on the right."""
+    left, top, size = SECTION_IN[0], SECTION_IN[1] + SECTION_IN[3] + 0.07, 8.0
+    duty = scheme.appraisal.duty.discharge_m3s
+    state = f"{litres(duty)} each pipe" if duty > 0.0 else "still water"
+    stated = "no vertical exaggeration" if times == 1.0 else f"vertical exaggeration {times:g}"
+    room = SECTION_IN[2] - ruler.width_in(stated, size) - 0.2
+    title = ruler.shortened(f"Long section of {scheme_text(scheme)}; {state}, lowest level", size, room, bold=True)
+    _write(figure, title, left, top, size, fontweight="bold")
+    _write(figure, stated, left + SECTION_IN[2], top, size, ha="right")
+
+
 def _lacking(figure: Figure, subject: Subject, ruler: Ruler) -> None:
-    """Say in the place of the long section why there is none."""
-    lines = ruler.wrapped(lacking_text(subject.plan), 9.0, SECTION_IN[2], 8)
-    for number, line in enumerate(lines):
-        _write(figure, line, SECTION_IN[0], SECTION_IN[1] + SECTION_IN[3] - 0.3 - 0.19 * number, 9.0)
+    """Say in the place of the long section why there is none, for each pipe."""
+    y = SECTION_IN[1] + SECTION_IN[3] + 0.07
+    _write(figure, "No long section: there is no route to draw", SECTION_IN[0], y, 8.0, fontweight="bold")
+    for text in lacking_texts(subject.plan):
+        for line in ruler.wrapped(text, 7.6, SECTION_IN[2], 3):
+            y -= 0.16
+            if y < SECTION_IN[1] - 0.6:
+                return
+            _write(figure, line, SECTION_IN[0], y, 7.6)
+        y -= 0.05
 
 
 def _foot(figure: Figure, subject: Subject, ruler: Ruler) -> None:

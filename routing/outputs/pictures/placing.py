@@ -19,7 +19,7 @@ from routing.records import FloatArray
 _SIDES = ((1, 1), (1, -1), (-1, 1), (-1, -1), (1, 0), (-1, 0), (0, 1), (0, -1))
 #: Distances from the point, in points of type; beyond the second a leader line is drawn.
 _REACHES = (5.0, 11.0, 20.0, 32.0, 48.0, 70.0)
-_LEADER_FROM = 15.0
+_LEADER_FROM = 25.0
 _ALIGN_X: dict[int, Literal["left", "right", "center"]] = {1: "left", -1: "right", 0: "center"}
 _ALIGN_Y: dict[int, Literal["bottom", "top", "center"]] = {1: "bottom", -1: "top", 0: "center"}
 #: Room kept free round every label, in pixels.
@@ -88,9 +88,9 @@ class Labels:
             self._lead(note, x, y)
         return note
 
-    def claim(self, text: Text) -> bool:
-        """Take the room of a text that is already placed; say whether it was free and inside the axes."""
-        box = self._box(text)
+    def claim(self, text: Text, gap_px: float) -> bool:
+        """Take the room of a text that is already placed, and a gap round it; say whether it was free."""
+        box = self._box(text).padded(gap_px)
         if not self._free(box) or self._hidden(box):
             return False
         self.taken.append(box)

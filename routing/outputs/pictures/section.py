@@ -7,6 +7,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
+from routing.errors import OvercrestError
 from routing.outputs.pictures.subject import Subject, grade_line_m
 from routing.outputs.tables import ceiling_m
 from routing.records import BoolArray, FloatArray, Plan, Route, Scheme, WaterBody
@@ -58,9 +59,17 @@ class Section:
 
 
 def section_of(subject: Subject, scheme: Scheme) -> Section:
-    """Return the long section of a scheme at duty and lowest level."""
+    """Return the long section of a scheme at duty and lowest level.
+
+    Raises
+    ------
+    OvercrestError
+        If the scheme's appraisal does not fit its route: a fault of ours.
+    """
     plan, route, run = subject.plan, scheme.route, scheme.appraisal.duty
     chainage, crown = route.chainage_m, scheme.appraisal.profile_crown_m
+    if not len(crown) == len(scheme.appraisal.crown_pressure_pa) == len(chainage):
+        raise OvercrestError(f"the appraisal of scheme {scheme.rank} does not fit route {route.name}")
     crest, worst = (int(np.argmin(np.abs(chainage - at))) for at in (run.crest_chainage_m, run.governing_chainage_m))
     kept = thinned(chainage, route.ground_m, (crest, worst))
     return Section(
