@@ -120,3 +120,26 @@ def test_a_dem_is_inspected_without_a_site_file(job, tmp_path):
     assert Path(facts.file).name == "dem.tif"
     with pytest.raises(TerrainError):
         inspect_dem(tmp_path / "none.tif")
+
+
+def test_a_window_grows_where_a_shorter_way_may_run_outside(make_job):
+    """Lake, lowest way and all of it lie in the first window, but that way winds; a straight one leaves the window."""
+    values = np.full((500, 600), 150.0)
+    values[260:341, 300:310], values[260:341, 320:330] = 100.0, 90.0
+    for leg, col in enumerate(range(311, 320, 2)):  # up and down between lake and valley
+        values[265:336, col] = 101.0
+        values[335 if leg % 2 else 265, col : col + 2] = 101.0
+    values[265, 319:321] = 101.0
+    values[335, 310:312] = 101.0
+    values[341:366, 305] = values[341:366, 325] = values[365, 305:326] = 102.0
+    job = make_job(values, ends=((300, 305), (300, 325)))
+    plan = job.plan()
+    best = plan.schemes[0]
+    assert plan.lowest_crest.level_m == 101.0
+    assert best.route.crest_m == pytest.approx(102.0)
+    assert best.route.length_m == pytest.approx((65 + 20 + 65) * 10 / 0.9996, rel=0.02)
+    assert plan.terrain.window.rows > 97
+    kept = make_job(values, ends=((300, 305), (300, 325)), search={"largest_window_cells": 97 * 117}).plan()
+    assert kept.lowest_crest.proven
+    assert kept.schemes[0].route.crest_m == pytest.approx(101.0)
+    assert any("proven only inside the 97 x 117 cells" in text for text in kept.warnings)
