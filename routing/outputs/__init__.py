@@ -14,14 +14,22 @@ if TYPE_CHECKING:
     from routing.outputs.field import Field
     from routing.outputs.fields import SCHEME_FIELDS, TABLES
     from routing.outputs.folder import check_folder, write_run
-    from routing.outputs.geojson import layer_text, points_layer, routes_layer, water_layer, zones_layer
+    from routing.outputs.geojson import layer_text, points_layer, routes_layer, samples_layer, water_layer, zones_layer
     from routing.outputs.messages import error_document, error_text
     from routing.outputs.outlook_screen import outlook_summary
     from routing.outputs.reference import fields_page
     from routing.outputs.runfacts import RunFacts
     from routing.outputs.runfile import look_document, plan_document
     from routing.outputs.screen import summary
-    from routing.outputs.tables import checks_table, costs_table, fields_table, schemes_table, sections_table
+    from routing.outputs.tables import (
+        checks_table,
+        costs_table,
+        crossings_table,
+        fields_table,
+        samples_table,
+        schemes_table,
+        sections_table,
+    )
     from routing.outputs.values import json_text
     from routing.outputs.wording import headline
 
@@ -35,6 +43,7 @@ _HOMES = {
     "check_folder": "folder",
     "checks_table": "tables",
     "costs_table": "tables",
+    "crossings_table": "tables",
     "error_document": "messages",
     "error_text": "messages",
     "fields_page": "reference",
@@ -47,6 +56,8 @@ _HOMES = {
     "plan_document": "runfile",
     "points_layer": "geojson",
     "routes_layer": "geojson",
+    "samples_layer": "geojson",
+    "samples_table": "tables",
     "schemes_table": "tables",
     "sections_table": "tables",
     "summary": "screen",
@@ -65,6 +76,7 @@ __all__ = [
     "check_folder",
     "checks_table",
     "costs_table",
+    "crossings_table",
     "error_document",
     "error_text",
     "fields_page",
@@ -77,6 +89,8 @@ __all__ = [
     "plan_document",
     "points_layer",
     "routes_layer",
+    "samples_layer",
+    "samples_table",
     "schemes_table",
     "sections_table",
     "summary",

@@ -19,6 +19,7 @@ from routing.outputs.other_fields import (
     WATER_FIELDS,
     ZONE_FIELDS,
 )
+from routing.outputs.ways_fields import CROSSING_FIELDS, SAMPLE_FIELDS
 from routing.records import Scheme
 
 SchemeField = Field[Scheme]
@@ -40,6 +41,14 @@ _IDENTITY: tuple[SchemeField, ...] = (
     ),
     Field(
         "route", "", "text", None, "Name of the route, in the order found.", lambda _, s: s.route.name, Shown("route")
+    ),
+    Field(
+        "crossing",
+        "",
+        "text",
+        None,
+        "Name of the crossing that the route takes, as in `crossings.csv`; empty where none is known.",
+        lambda _, s: s.route.crossing or None,
     ),
     Field("pipe", "", "text", None, "Name of the pipe in the site file.", lambda _, s: s.pipe.name, Shown("pipe")),
     Field("material", "", "text", None, "Material of the pipe.", lambda _, s: s.pipe.material),
@@ -173,6 +182,8 @@ TABLES: dict[str, dict[str, Field[Any]]] = {
         ("sections.csv", SECTION_FIELDS),
         ("checks.csv", CHECK_FIELDS),
         ("costs.csv", COST_FIELDS),
+        ("crossings.csv", CROSSING_FIELDS),
+        ("samples.csv", SAMPLE_FIELDS),
         ("water.geojson", WATER_FIELDS),
         ("zones.geojson", ZONE_FIELDS),
         ("points.geojson", POINT_FIELDS),

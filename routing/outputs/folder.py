@@ -17,12 +17,20 @@ from pathlib import Path
 from typing import Any
 
 from routing.errors import OutputError, Problem
-from routing.outputs.geojson import layer_text, points_layer, routes_layer, water_layer, zones_layer
+from routing.outputs.geojson import layer_text, points_layer, routes_layer, samples_layer, water_layer, zones_layer
 from routing.outputs.pictures.quiet import quietly
 from routing.outputs.pictures.subject import Wanted
 from routing.outputs.runfacts import RunFacts
 from routing.outputs.runfile import plan_document
-from routing.outputs.tables import checks_table, costs_table, fields_table, schemes_table, sections_table
+from routing.outputs.tables import (
+    checks_table,
+    costs_table,
+    crossings_table,
+    fields_table,
+    samples_table,
+    schemes_table,
+    sections_table,
+)
 from routing.outputs.values import json_text
 from routing.records import Plan
 
@@ -34,10 +42,13 @@ WRITERS: dict[str, Callable[[Plan], str]] = {
     "water.geojson": lambda plan: layer_text(water_layer(plan)),
     "zones.geojson": lambda plan: layer_text(zones_layer(plan)),
     "points.geojson": lambda plan: layer_text(points_layer(plan)),
+    "samples.geojson": lambda plan: layer_text(samples_layer(plan)),
     "schemes.csv": schemes_table,
     "sections.csv": sections_table,
     "checks.csv": checks_table,
     "costs.csv": costs_table,
+    "crossings.csv": crossings_table,
+    "samples.csv": samples_table,
     "fields.csv": lambda _: fields_table(),
 }
 

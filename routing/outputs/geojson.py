@@ -1,4 +1,4 @@
-"""GeoJSON layers per RFC 7946: routes, water body, zones, points.
+"""GeoJSON layers per RFC 7946: routes, water body, zones, points, samples.
 
 WGS 84 longitude and latitude with 7 decimals, two ordinates, no ``crs`` member, flat scalar properties. Levels
 are properties in the DEM's own datum: a third ordinate would have to be a height above the ellipsoid (section 4).
@@ -16,6 +16,8 @@ from routing.outputs.geometry import Drawn, draw_line, draw_point, draw_polygon
 from routing.outputs.lonlat import LonLat, joined
 from routing.outputs.other_fields import POINT_FIELDS, WATER_FIELDS, ZONE_FIELDS, MapPoint
 from routing.outputs.values import Value
+from routing.outputs.ways import own_samples
+from routing.outputs.ways_fields import SAMPLE_FIELDS
 from routing.records import Plan, Route
 
 Layer = dict[str, Any]
@@ -71,8 +73,25 @@ def zones_layer(plan: Plan) -> Layer:
     )
 
 
+def samples_layer(plan: Plan) -> Layer:
+    """Return the candidates by weights that no scheme runs on, one line feature each; none where there are none.
+
+    Raises
+    ------
+    OutputError
+        If a route cannot be placed in WGS 84.
+    """
+    lonlat = LonLat(plan.terrain.facts.crs_wkt)
+    return _layer(
+        [
+            (f"sample-{own.number}", draw_line(own.sample.route.line, lonlat), row(SAMPLE_FIELDS, plan, own))
+            for own in own_samples(plan)
+        ]
+    )
+
+
 def points_layer(plan: Plan) -> Layer:
-    """Return intake, outlet, the crest of each route, the lowest crest and the spill as Point features.
+    """Return intake, outlet, the crest of each route, the crossings, the lowest crest and the spill as Point features.
 
     Intake and outlet are those of the best scheme; where they were left open, each route's own are there too.
 
@@ -115,6 +134,10 @@ def _points(plan: Plan) -> dict[str, MapPoint]:
             route.crest_m,
             route.name,
             float(route.chainage_m[k]),
+        )
+    for crossing in plan.crossings:
+        points[f"crossing-{crossing.name}"] = MapPoint(
+            "crossing", crossing.name, crossing.x, crossing.y, crossing.level_m, crossing=crossing
         )
     saddles = (
         ("lowest-crest", "lowest crest", "lowest possible crest between water and outlet", plan.lowest_crest),

@@ -10,6 +10,9 @@ from typing import Any
 from routing.outputs.field import Field
 from routing.outputs.fields import TABLES
 
+#: Layers that have the fields of a table.
+_LAYERS = {"schemes.csv": "routes.geojson", "samples.csv": "samples.geojson"}
+
 _HEAD = """# Output fields
 
 Made from `routing/outputs/fields.py` by `python -m routing.outputs.reference docs/reference/fields.md`.
@@ -23,11 +26,14 @@ What is unknown, infinite or does not apply is empty in tables and `null` in JSO
 | `routes.geojson` | one line feature a scheme, with the fields of `schemes.csv` |
 | `water.geojson` | the water body as polygons |
 | `zones.geojson` | the zones as polygons, as they were mended and joined; no feature where there are none |
-| `points.geojson` | intake, outlet, crest of each route, lowest possible crest, spill |
+| `points.geojson` | intake, outlet, crest of each route, crossings, lowest possible crest, spill |
+| `samples.geojson` | candidates by weights that no scheme runs on, with the fields of `samples.csv`; may be empty |
 | `schemes.csv` | one row a scheme, best first |
 | `sections.csv` | long section of each route, with levels and pressures of its best scheme |
 | `checks.csv` | one row for every scheme and check, the checks not made included |
 | `costs.csv` | one row for every scheme and cost line |
+| `crossings.csv` | one row for every way over the divide that is a place of its own, with why it was used or not |
+| `samples.csv` | one row for every candidate by weights, with what it lacks |
 | `fields.csv` | this page as a table |
 | `run.json` | everything but the coordinates: result, settings, versions, hashes of inputs and files, warnings |
 
@@ -44,7 +50,7 @@ def fields_page() -> str:
 
 
 def _section(file: str, fields: Mapping[str, Field[Any]]) -> str:
-    title = f"{file}, routes.geojson" if file == "schemes.csv" else file
+    title = f"{file}, {_LAYERS[file]}" if file in _LAYERS else file
     rows = [
         f"| `{field.name}` | {field.unit} | {field.kind} | {'' if field.decimals is None else field.decimals} | "
         f"{field.sense} |"

@@ -11,6 +11,8 @@ from routing.outputs.lonlat import LonLat
 from routing.outputs.other_fields import CHECK_FIELDS, COST_FIELDS, WATER_FIELDS, CheckRow, CostRow
 from routing.outputs.runfacts import RunFacts, document_head, inputs_document, run_document
 from routing.outputs.values import Value, plain
+from routing.outputs.ways import crossing_rows, sample_rows
+from routing.outputs.ways_fields import CROSSING_FIELDS, SAMPLE_FIELDS
 from routing.outputs.wording import headline, still_water_lift_m
 from routing.records import Outlook, Plan, Scheme
 
@@ -46,7 +48,10 @@ def plan_document(plan: Plan, run: RunFacts | None = None) -> dict[str, Any]:
         "headline": headline(plan),
         "schemes": [_scheme(plan, scheme) for scheme in plan.schemes],
         "shortfalls": plain(plan.shortfalls),
-        "choices": plain(plan.choice_notes),
+        "crossings": [row(CROSSING_FIELDS, plan, crossing) for crossing in crossing_rows(plan)],
+        "crossings_note": plain(plan.crossings_note),
+        "samples": [row(SAMPLE_FIELDS, plan, sample) for sample in sample_rows(plan)],
+        "choice_notes": plain(plan.choice_notes),
         **_ground(plan),
         "assumptions": plain(plan.assumptions),
         "warnings": plain([*plan.warnings, *_price_warning(plan)]),

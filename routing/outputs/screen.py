@@ -1,37 +1,17 @@
-"""What the terminal shows of a plan: headline, ranked table, proof, what would help, cautions.
-
-A verdict is always a word; its colour (blue, yellow, magenta: apart for every common kind of colour blindness)
-only repeats it.
-"""
+"""What the terminal shows of a plan: headline, ranked table, proof, other ways over, what would help, cautions."""
 
 from __future__ import annotations
 
 from rich.console import Group, RenderableType
-from rich.table import Table
 from rich.text import Text
 
 from routing.outputs.cautions import CAUTIONS, INVENTED_PRICES
-from routing.outputs.field import Shown
-from routing.outputs.fields import SCHEME_FIELDS
 from routing.outputs.pieces import MOST_LINES, bullets, heading
 from routing.outputs.runfile import prices_invented
-from routing.outputs.values import Value, clean
-from routing.outputs.wording import (
-    best_scheme,
-    breaking_text,
-    counted,
-    figures,
-    fixed,
-    headline,
-    least_shortfall,
-    litres,
-)
-from routing.records import Grade, Plan, Scheme, Verdict
-
-#: Rows of the table where nothing else is asked; the rest is in ``schemes.csv``.
-MOST_ROWS = 12
-_LEAST_WIDTH = 22
-GRADE_STYLES: dict[Grade, str] = {"fit": "bold blue", "caution": "bold yellow", "unfit": "bold magenta"}
+from routing.outputs.scheme_table import MOST_ROWS, scheme_table
+from routing.outputs.ways_screen import least_bad_parts, ways_parts
+from routing.outputs.wording import best_scheme, breaking_text, counted, headline, least_shortfall, litres
+from routing.records import Plan, Scheme
 
 
 def summary(plan: Plan, *, top: int = MOST_ROWS) -> RenderableType:
@@ -57,56 +37,12 @@ def summary(plan: Plan, *, top: int = MOST_ROWS) -> RenderableType:
     if best is not None:
         parts += ["", heading(f"Scheme {best.rank}"), bullets(_best_notes(best))]
     if plan.choice_notes:
-        parts += ["", heading("Ends left open"), bullets(plan.choice_notes)]
-    parts += _shortfall_notes(plan)
+        parts += ["", heading("Choice of ends"), bullets(plan.choice_notes)]
+    parts += [*ways_parts(plan), *least_bad_parts(plan), *_shortfall_notes(plan)]
     if plan.warnings:
         parts += ["", heading("Warnings"), bullets(plan.warnings, "in run.json")]
     made = f"{counted(len(plan.assumptions), 'assumption')} made: listed in run.json."
     return Group(*parts, "", heading("Cautions"), bullets(CAUTIONS), "", Text(made))
-
-
-def scheme_table(plan: Plan, top: int = MOST_ROWS) -> Table:
-    """Return the ranked table of the first ``top`` schemes."""
-    table = Table(box=None, pad_edge=False, padding=(0, 2, 0, 0), header_style="bold")
-    shown = [(field, field.shown) for field in SCHEME_FIELDS if field.shown is not None]
-    for field, how in shown:
-        unit = plan.schemes[0].cost.currency if field.unit == "currency" else how.unit
-        words = how.style == "text"
-        # A name is folded only where it is long: without a least width the last column would squeeze it.
-        longest = max(len(shown_text(how, clean(field.get(plan, scheme)))) for scheme in plan.schemes[:top])
-        table.add_column(
-            Text(f"{how.head}\n{unit}".rstrip()),
-            justify="left" if words else "right",
-            no_wrap=not words,
-            min_width=min(longest, _LEAST_WIDTH) if words else None,
-            overflow="fold",
-        )
-    table.add_column("verdict", no_wrap=True)
-    table.add_column("decided by", overflow="fold")
-    for scheme in plan.schemes[:top]:
-        cells = [Text(shown_text(how, clean(field.get(plan, scheme)))) for field, how in shown]
-        table.add_row(*cells, _verdict_text(scheme.verdict), Text(scheme.verdict.governing.name.replace("_", " ")))
-    return table
-
-
-def _verdict_text(verdict: Verdict) -> Text:
-    """Return the verdict, and in brackets what it would be without the checks not made."""
-    found = Text(verdict.grade, style=GRADE_STYLES[verdict.grade])
-    if verdict.grade_of_made != verdict.grade:
-        found.append(f" ({verdict.grade_of_made})", style=GRADE_STYLES[verdict.grade_of_made])
-    return found
-
-
-def shown_text(how: Shown, value: Value) -> str:
-    """Return a value as a cell of the terminal's table: a dash for what is not known."""
-    if value is None:
-        return "-"
-    if isinstance(value, str | bool):
-        return str(value)
-    scaled = value * how.factor
-    if how.style == "three figures":
-        return figures(scaled)
-    return fixed(scaled, 2 if how.style == "two" else 0)
 
 
 def _table_notes(plan: Plan, top: int) -> list[RenderableType]:

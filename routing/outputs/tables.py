@@ -1,4 +1,4 @@
-"""CSV tables: schemes, long sections, checks, cost lines, and the meaning of the columns.
+"""CSV tables: schemes, long sections, checks, cost lines, crossings, samples, and the meaning of the columns.
 
 UTF-8, comma between cells, point as decimal sign whatever the locale, first line the field names, CRLF line ends
 (RFC 4180), no comment lines: every reader takes them as they are. What the columns mean stands in ``fields.csv``.
@@ -26,6 +26,8 @@ from routing.outputs.other_fields import (
     SectionRow,
 )
 from routing.outputs.values import clean
+from routing.outputs.ways import crossing_rows, sample_rows
+from routing.outputs.ways_fields import CROSSING_FIELDS, SAMPLE_FIELDS
 from routing.records import FloatArray, Plan, Route, Scheme
 
 Item = TypeVar("Item")
@@ -56,6 +58,16 @@ def checks_table(plan: Plan) -> str:
 def costs_table(plan: Plan) -> str:
     """Return ``costs.csv``: one row for every scheme and cost line."""
     return _table(COST_FIELDS, plan, [CostRow(s, line) for s in plan.schemes for line in s.cost.lines])
+
+
+def crossings_table(plan: Plan) -> str:
+    """Return ``crossings.csv``: one row for every crossing, best first, with what goes over it."""
+    return _table(CROSSING_FIELDS, plan, crossing_rows(plan))
+
+
+def samples_table(plan: Plan) -> str:
+    """Return ``samples.csv``: one row for every candidate by weights, in the order of the sweep."""
+    return _table(SAMPLE_FIELDS, plan, sample_rows(plan))
 
 
 def fields_table() -> str:

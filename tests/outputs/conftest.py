@@ -18,6 +18,7 @@ from routing.records import (
     Check,
     Cost,
     CostLine,
+    Crossing,
     DemandAsk,
     GridWindow,
     IntakeAsk,
@@ -34,6 +35,7 @@ from routing.records import (
     Proof,
     Route,
     Saddle,
+    Sample,
     Scheme,
     Setting,
     Shortfall,
@@ -240,6 +242,35 @@ def make_water(place: Place, terrain: Terrain, **changes) -> WaterBody:
     return replace(body, **changes)
 
 
+def make_crossings(place: Place) -> tuple[Crossing, ...]:
+    used, closed = "a route over it was appraised", "no way on from it keeps to the limits"
+    return (
+        Crossing("C1", *place.at(152.5, 147.5), 103.4, 280.1, 3.4, True, used),
+        Crossing("C2", *place.at(152.5, 92.5), 103.5, 305.7, 3.5, True, used),
+        Crossing("C3", *place.at(152.5, 32.5), 104.1, 391.2, 4.1, False, closed),
+    )
+
+
+def make_samples(place: Place) -> tuple[Sample, ...]:
+    """Three weights: a path 1 m too high, the path of R1, and one so long that the fall does not drive the duty."""
+    straight, same, long_way = (
+        make_route(*what) for what in (("R3", place, -20.0), ("R1", place, 0.0), ("R4", place, 90.0))
+    )
+    large = make_pipes()[1]
+    high = make_appraisal(straight, large, 0.1213, 0.1, "suction")
+    gamma = WATER.density_kgm3 * G
+    lower = high.duty.reserve_left_m + 1.0
+    duty = replace(
+        high.duty, crown_pressure_pa=high.duty.crown_pressure_pa - lower * gamma, reserve_left_m=-1.0,
+        lift_m=high.duty.lift_m + lower,
+    )  # fmt: skip
+    return (
+        Sample(large.name, 0.0, straight, replace(high, duty=duty), 1.0, ""),
+        Sample(large.name, 1.0, same, make_appraisal(same, large, 0.1213, 0.1, "energy"), -2.3, "R1"),
+        Sample(large.name, 10.0, long_way, make_appraisal(long_way, large, 0.06, 0.1, "energy"), -1.0, ""),
+    )
+
+
 class Maker:
     """Builds plans and outlooks; each keyword changes one thing."""
 
@@ -290,6 +321,29 @@ class Maker:
             ASSUMPTIONS, ("the DEM's edge cuts the lake",), {"search": 0.31, "total": 0.5},
         )  # fmt: skip
         return replace(plan, **changes)
+
+    def beside(self, place: Place | None = None, **changes) -> Plan:
+        """A plan with crossings, candidates by weights and a choice of ends."""
+        place = place or Place()
+        plan = self.plan(place)
+        over = {"R1": "C1", "R2": "C2"}
+        schemes = tuple(replace(s, route=replace(s.route, crossing=over[s.route.name])) for s in plan.schemes)
+        plan = replace(
+            plan, schemes=schemes, crossings=make_crossings(place), samples=make_samples(place),
+            crossings_note="2 of 3 places on the divide have a route",
+            choice_notes=("The outlet was chosen among 41 places; the second best carries 110 l/s.",),
+        )  # fmt: skip
+        return replace(plan, **changes)
+
+    def beside_no_route(self) -> Plan:
+        """The same where no route is feasible: the one scheme left lacks 0.8 m."""
+        plan = self.beside()
+        dead = plan.schemes[3]
+        largest = replace(dead.appraisal.largest, energy_discharge_m3s=0.13)
+        duty = replace(dead.appraisal.duty, reserve_left_m=-0.8)
+        dead = replace(dead, rank=1, appraisal=replace(dead.appraisal, largest=largest, duty=duty))
+        samples = plan.samples[0], plan.samples[2]
+        return replace(plan, schemes=(dead,), shortfalls=self.no_route().shortfalls, samples=samples)
 
     def no_route(self) -> Plan:
         plan = self.plan()

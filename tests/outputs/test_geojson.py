@@ -12,7 +12,15 @@ from shapely import LineString, MultiPolygon, Polygon, box
 from shapely.geometry import shape
 
 from routing.outputs.fields import SCHEME_FIELDS, TABLES
-from routing.outputs.geojson import layer_text, points_layer, routes_layer, routes_of, water_layer, zones_layer
+from routing.outputs.geojson import (
+    layer_text,
+    points_layer,
+    routes_layer,
+    routes_of,
+    samples_layer,
+    water_layer,
+    zones_layer,
+)
 from routing.records import Zone
 
 LAYERS = {
@@ -20,6 +28,7 @@ LAYERS = {
     "water": water_layer,
     "points": points_layer,
     "zones": lambda plan: zones_layer(zoned(plan)),
+    "samples": samples_layer,
 }
 TYPES = {
     "FeatureCollection", "Feature", "Point", "MultiPoint", "LineString", "MultiLineString", "Polygon",
@@ -43,7 +52,9 @@ def flat(coordinates, depth):
     return [coordinates] if depth == 0 else [p for part in coordinates for p in flat(part, depth - 1)]
 
 
-@pytest.fixture(params=["utm", "degrees", "feet", "antimeridian", "no route", "no schemes"])
+@pytest.fixture(
+    params=["utm", "degrees", "feet", "antimeridian", "no route", "no schemes", "beside", "beside antimeridian"]
+)
 def any_plan(request, make):
     return {
         "utm": make.plan,
@@ -52,6 +63,8 @@ def any_plan(request, make):
         "antimeridian": lambda: make.plan(make.antimeridian()),
         "no route": make.no_route,
         "no schemes": lambda: make.plan(schemes=()),
+        "beside": make.beside,
+        "beside antimeridian": lambda: make.beside(make.antimeridian()),
     }[request.param]()
 
 
@@ -140,12 +153,14 @@ def test_i_json(text):  # 11.1: UTF-8, no duplicate names, no NaN or infinity
     json.loads(text, object_pairs_hook=no_duplicates, parse_constant=never)
 
 
-def test_properties_are_the_fields(plan):
+def test_properties_are_the_fields(make):
+    plan = make.beside()
     for name, found in (
         ("schemes.csv", routes_layer(plan)),
         ("water.geojson", water_layer(plan)),
         ("points.geojson", points_layer(plan)),
         ("zones.geojson", zones_layer(zoned(plan))),
+        ("samples.csv", samples_layer(plan)),
     ):
         for feature in found["features"]:
             assert list(feature["properties"]) == list(TABLES[name])
@@ -240,6 +255,33 @@ def test_points_read_back(plan, tmp_path):
     assert frame.chainage_m["crest-R1"] == pytest.approx(110.4, abs=0.5)
     metres = frame.to_crs("EPSG:32632")
     assert metres.geometry.x.to_numpy() == pytest.approx(frame.x.to_numpy(), abs=0.01)
+
+
+def test_crossings_read_back(make, tmp_path):
+    plan = make.beside()
+    frame = read_back(tmp_path, points_layer(plan))
+    frame = frame[frame.kind == "crossing"].set_index("id")
+    assert list(frame.index) == ["crossing-C1", "crossing-C2", "crossing-C3"]
+    assert list(frame.name) == ["C1", "C2", "C3"]
+    assert list(frame.level_m) == [103.4, 103.5, 104.1]
+    assert list(frame.length_m) == [280.1, 305.7, 391.2]
+    assert list(frame.lift_m) == [3.4, 3.5, 4.1]
+    assert [bool(used) for used in frame.used] == [True, True, False]
+    assert frame.note["crossing-C3"] == "no way on from it keeps to the limits"
+    back = frame.to_crs("EPSG:32632").geometry
+    for point, crossing in zip(back, plan.crossings, strict=True):
+        assert (point.x, point.y) == pytest.approx((crossing.x, crossing.y), abs=0.02)
+
+
+def test_samples_read_back(make, tmp_path):
+    plan = make.beside()
+    frame = read_back(tmp_path, samples_layer(plan))
+    assert list(frame.route) == ["R3", "R4"]  # the other is the path of a scheme
+    assert list(frame.id) == ["sample-1", "sample-3"]
+    for line, sample in zip(frame.to_crs("EPSG:32632").geometry, plan.samples[::2], strict=True):
+        assert line.hausdorff_distance(sample.route.line) < 0.02
+    assert samples_layer(make.plan()) == {"type": "FeatureCollection", "features": []}
+    assert samples_layer(make.beside(samples=plan.samples[1:2])) == {"type": "FeatureCollection", "features": []}
 
 
 def test_what_is_not_known_has_no_point(make):

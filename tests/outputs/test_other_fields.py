@@ -80,4 +80,8 @@ def test_point_without_a_level(plan):
         "x": 1.0,
         "y": 2.0,
         "proven": None,
+        "length_m": None,
+        "lift_m": None,
+        "used": None,
+        "note": None,
     }

@@ -21,7 +21,7 @@ def walk(value):
         yield value
 
 
-@pytest.fixture(params=["plan", "no route", "degrees", "antimeridian", "feet", "look"])
+@pytest.fixture(params=["plan", "beside", "no route", "degrees", "antimeridian", "feet", "look"])
 def document(request, make):
     return {
         "plan": lambda: plan_document(make.plan()),
@@ -29,6 +29,7 @@ def document(request, make):
         "degrees": lambda: plan_document(make.plan(make.degrees())),
         "antimeridian": lambda: plan_document(make.plan(make.antimeridian())),
         "feet": lambda: plan_document(make.plan(make.feet())),
+        "beside": lambda: plan_document(make.beside()),
         "look": lambda: look_document(make.outlook()),
     }[request.param]()
 
@@ -81,6 +82,24 @@ def test_schemes_hold_all_fields_checks_and_costs(plan):
     assert first["cost_lines"][0]["item"] == "supply"
     assert sum(line["amount"] for line in first["cost_lines"]) == pytest.approx(first["cost_total"])
     assert first["high_point_chainages_m"] == [210.0, 250.0]
+
+
+def test_what_stands_beside_the_ranking(make):
+    found = plan_document(make.beside())
+    assert [(row["crossing"], row["scheme"], row["used"]) for row in found["crossings"]] == [
+        ("C1", 1, True), ("C2", 3, True), ("C3", None, False),
+    ]  # fmt: skip
+    assert found["crossings_note"] == "2 of 3 places on the divide have a route"
+    assert [(row["weight"], row["route"], row["same_as"]) for row in found["samples"]] == [
+        (0.0, "R3", None), (1.0, "R1", "R1"), (10.0, "R4", None),
+    ]  # fmt: skip
+    assert found["choice_notes"] == ["The outlet was chosen among 41 places; the second best carries 110 l/s."]
+    assert [scheme["crossing"] for scheme in found["schemes"]] == ["C1", "C1", "C2", "C2"]
+
+
+def test_nothing_beside_the_ranking_is_told_as_nothing(plan):
+    found = plan_document(plan)
+    assert (found["crossings"], found["crossings_note"], found["samples"], found["choice_notes"]) == ([], "", [], [])
 
 
 def test_no_route(make):

@@ -6,9 +6,8 @@ from rich.console import Console
 from rich.text import Text
 
 from routing.outputs.cautions import CAUTIONS, INVENTED_PRICES
-from routing.outputs.field import Shown
-from routing.outputs.screen import GRADE_STYLES, MOST_ROWS, scheme_table, shown_text, summary
-from routing.records import GRADES
+from routing.outputs.scheme_table import MOST_ROWS, scheme_table
+from routing.outputs.screen import summary
 
 
 def shown(renderable, width=100, **options):
@@ -29,56 +28,6 @@ def screen(plan):
 def test_it_fits_100_columns(screen, make):
     for text in (screen, shown(summary(make.no_route()))):
         assert max(len(line.rstrip()) for line in text.splitlines()) <= 100
-
-
-def test_the_table_holds_one_line_a_scheme(plan):
-    head, units, *rows = shown(scheme_table(plan)).splitlines()
-    assert head.split()[:4] == ["total", "length", "lift", "reserve"]
-    assert units.split() == [
-        "#",
-        "route",
-        "pipe",
-        "n",
-        "l/s",
-        "m",
-        "m",
-        "left,",
-        "m",
-        "EUR",
-        "verdict",
-        "decided",
-        "by",
-    ]
-    lines = [row.split() for row in rows]
-    assert len(lines) == 4
-    assert lines[0] == [
-        "1",
-        "R1",
-        "PE",
-        "315",
-        "SDR",
-        "17",
-        "1",
-        "121",
-        "281",
-        "3.72",
-        "2.32",
-        "19,800",
-        "fit",
-        "suction",
-    ]
-    assert lines[3][-6:] == ["306", "7.97", "-0.80", "21,300", "unfit", "suction"]
-
-
-def test_long_names_are_folded_not_cut(plan):
-    best = plan.schemes[0]
-    name = "PE 100 RC SDR 17 DN 315 with a protective coat, coil of 100 m, on stock"
-    wide = replace(plan, schemes=(replace(best, pipe=replace(best.pipe, name=name)),))
-    text = shown(scheme_table(wide))
-    assert max(len(line.rstrip()) for line in text.splitlines()) <= 100
-    assert "…" not in text
-    for word in ("protective", "19,800", "fit", "2.32"):
-        assert word in text
 
 
 def test_names_are_not_read_as_markup(plan):
@@ -132,16 +81,6 @@ def test_a_verdict_that_rests_on_checks_not_made_shows_the_other(plan):
     assert "in brackets" not in flat(shown(summary(plan)))
 
 
-def test_names_of_usual_length_are_not_folded(plan):
-    best = plan.schemes[0]
-    long_name = replace(best.verdict.governing, name="drawdown_rate")
-    pipe = replace(best.pipe, name="PE100 RC 315 SDR 17.6")
-    wide = replace(plan, schemes=(replace(best, pipe=pipe, verdict=replace(best.verdict, governing=long_name)),))
-    text = shown(scheme_table(wide))
-    assert "PE100 RC 315 SDR 17.6" in text
-    assert max(len(line.rstrip()) for line in text.splitlines()) <= 100
-
-
 def test_nothing_at_all_is_no_trouble(make):
     plan = make.plan(schemes=(), shortfalls=(), warnings=(), assumptions=())
     found = flat(shown(summary(plan)))
@@ -168,24 +107,3 @@ def test_verdicts_are_words_with_and_without_colour(plan):
     assert "\x1b" not in plain
     assert "\x1b[1;34mfit" in coloured
     assert Text.from_ansi(coloured).plain.split() == plain.split()
-
-
-def test_verdict_colours_differ_and_are_not_red_and_green():
-    assert set(GRADE_STYLES) == set(GRADES)
-    assert len(set(GRADE_STYLES.values())) == 3
-    assert not any("red" in style or "green" in style for style in GRADE_STYLES.values())
-
-
-@pytest.mark.parametrize(
-    ("how", "value", "expected"),
-    [
-        (Shown("x", "l/s", 1e3, "three figures"), 0.0123456, "12.3"),
-        (Shown("x", style="two"), -0.8049, "-0.80"),
-        (Shown("x", style="whole"), 1234.5678, "1,235"),
-        (Shown("x", style="count"), 3, "3"),
-        (Shown("x"), "R1", "R1"),
-        (Shown("x"), None, "-"),
-    ],
-)
-def test_cells(how, value, expected):
-    assert shown_text(how, value) == expected

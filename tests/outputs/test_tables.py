@@ -13,7 +13,9 @@ from routing.outputs.tables import (
     ceiling_m,
     checks_table,
     costs_table,
+    crossings_table,
     fields_table,
+    samples_table,
     schemes_table,
     sections_table,
 )
@@ -23,6 +25,8 @@ WRITERS = {
     "sections.csv": sections_table,
     "checks.csv": checks_table,
     "costs.csv": costs_table,
+    "crossings.csv": crossings_table,
+    "samples.csv": samples_table,
 }
 
 
@@ -31,8 +35,8 @@ def rows(text):
 
 
 @pytest.mark.parametrize("name", WRITERS)
-def test_head_and_shape(plan, name):
-    text = WRITERS[name](plan)
+def test_head_and_shape(make, name):
+    text = WRITERS[name](make.beside())
     lines = list(csv.reader(io.StringIO(text, newline=""), strict=True))
     assert lines[0] == list(TABLES[name])
     assert {len(line) for line in lines} == {len(TABLES[name])}
@@ -43,7 +47,7 @@ def test_head_and_shape(plan, name):
 
 
 @pytest.mark.parametrize("name", WRITERS)
-def test_no_rows_where_there_are_no_schemes(make, name):
+def test_no_rows_where_there_is_nothing(make, name):
     assert len(WRITERS[name](make.plan(schemes=())).splitlines()) == 1
 
 
@@ -56,12 +60,14 @@ def test_schemes(plan):
     assert found[0]["prices_invented"] == "true"
 
 
-def test_pandas_reads_types(plan):
-    frame = pd.read_csv(io.StringIO(schemes_table(plan)))
-    for name, field in TABLES["schemes.csv"].items():
+@pytest.mark.parametrize("file", ["schemes.csv", "crossings.csv", "samples.csv"])
+def test_pandas_reads_types(make, file):
+    frame = pd.read_csv(io.StringIO(WRITERS[file](make.beside())))
+    for name, field in TABLES[file].items():
         kind = frame[name].dtype.kind
         assert (
-            kind in {"integer": "i", "number": "if", "text": "OU", "flag": "b"}[field.kind]
+            kind
+            in {"integer": "if" if frame[name].hasnans else "i", "number": "if", "text": "OU", "flag": "b"}[field.kind]
             or frame[name].dtype == "str"
         ), name
 
@@ -146,6 +152,38 @@ def test_costs_add_up(plan):
         amounts = [float(row["amount"]) for row in found if row["scheme"] == str(scheme.rank)]
         assert sum(amounts) == pytest.approx(scheme.cost.total, abs=0.01)
     assert {row["prices_invented"] for row in found} == {"true"}
+
+
+def test_crossings(make):
+    found = rows(crossings_table(make.beside()))
+    assert [row["crossing"] for row in found] == ["C1", "C2", "C3"]
+    assert [(row["scheme"], row["schemes"]) for row in found] == [("1", "2"), ("3", "2"), ("", "0")]
+    assert [row["used"] for row in found] == ["true", "true", "false"]
+    assert found[2]["note"] == "no way on from it keeps to the limits"
+    assert (found[1]["level_m"], found[1]["length_m"], found[1]["lift_m"]) == ("103.500", "305.70", "3.500")
+
+
+def test_schemes_name_crossings_of_the_table(make):
+    plan = make.beside()
+    names = {row["crossing"] for row in rows(crossings_table(plan))}
+    assert [row["crossing"] for row in rows(schemes_table(plan))] == ["C1", "C1", "C2", "C2"]
+    assert {row["crossing"] for row in rows(schemes_table(plan))} <= names
+    assert {row["crossing"] for row in rows(schemes_table(make.plan()))} == {""}
+
+
+def test_samples(make):
+    plan = make.beside()
+    found = rows(samples_table(plan))
+    assert [(row["weight"], row["route"], row["same_as"]) for row in found] == [
+        ("0.000", "R3", ""), ("1.000", "R1", "R1"), ("10.000", "R4", ""),
+    ]  # fmt: skip
+    assert [row["missing_m"] for row in found] == ["1.000", "0.000", "0.000"]
+    assert found[0]["reserve_left_m"] == "-1.000"
+    assert "needs 1.00 m of trench, level or reserve" in found[0]["governing"]
+    same = plan.samples[1]
+    assert float(found[1]["length_m"]) == pytest.approx(same.route.length_m, abs=0.006)
+    assert float(found[1]["crest_m"]) == pytest.approx(same.route.ground_m.max(), abs=6e-4)
+    assert float(found[1]["lift_m"]) == pytest.approx(103.4 + 0.315 - 100.0)
 
 
 def test_fields_table_lists_every_column():
