@@ -119,8 +119,11 @@ class Bench:
             carried_at_length=lambda length: energy_discharge_m3s(pipe, length, self.reference, *rest),
         )
 
-    def route(self, path: PathEdges, line: GroundLine, best: Found) -> Route:
-        """Make a route of a path; the same path always gets the same name."""
+    def route(self, path: PathEdges, line: GroundLine, best: Found, claim: str = "") -> Route:
+        """Make a route of a path; the same path always gets the same name.
+
+        ``claim`` is what else is proven of it, as a sentence.
+        """
         key = path.cells.tobytes()
         name = self.names.setdefault(key, f"R{len(self.names) + 1}")
         levels = self.conditions_at(path.cells).lowest
@@ -132,7 +135,7 @@ class Bench:
             y=line.y,
             chainage_m=line.chainage_m,
             ground_m=line.ground_m,
-            proof=self._proof(path, best),
+            proof=self._proof(path, best, claim),
             outlet_m=levels.outlet_m,
             mouth_m=levels.intake_mouth_m,
             underwater_length_m=self._underwater_m(path, line),
@@ -151,7 +154,7 @@ class Bench:
         ends = slice(above[0] - 1, above[0] + 1)
         return float(np.interp(self.setting.lowest.water_m, line.ground_m[ends], line.chainage_m[ends]))
 
-    def _proof(self, path: PathEdges, best: Found) -> Proof:
+    def _proof(self, path: PathEdges, best: Found, claim: str) -> Proof:
         scene, start = self.scene, path.start_length_m
         first, last = ((int(row), int(col)) for row, col in path.cells[[0, -1]])
         straight = start + scene.grid.straight_m(first, last)
@@ -168,6 +171,7 @@ class Bench:
             f"{best.high:.4g} m3/s in one pipe; the best found carries {best.low:.4g} by the same rule. "
             f"The path is {path.length_m:.1f} m long; no line of any kind{ends} is shorter than {straight:.1f} m."
         )
+        text = f"{text} {claim}".rstrip()
         return Proof(path.length_m, straight, free_ratio(self.scene.grid), whole, best.low, best.high, text)
 
 

@@ -40,11 +40,16 @@ class Offer:
     proven: bool
 
 
-def make_candidate(bench: Bench, pipe: Pipe, path: PathEdges, best: Found, count: int, duty: float | None) -> Candidate:
-    """Appraise a path with a pipe at a duty; ``best`` tells the bracket of the largest discharge of any path."""
+def make_candidate(
+    bench: Bench, pipe: Pipe, path: PathEdges, best: Found, count: int, duty: float | None, claim: str = ""
+) -> Candidate:
+    """Appraise a path with a pipe at a duty.
+
+    ``best`` tells the bracket of the largest discharge of any path, ``claim`` what else is proven of this one.
+    """
     line = bench.section(path)
     appraisal = appraise(pipe, bench.profile(pipe, line), bench.conditions_at(path.cells), duty)
-    return Candidate(bench.route(path, line, best), pipe, count, appraisal)
+    return Candidate(bench.route(path, line, best, claim), pipe, count, appraisal)
 
 
 def carries(appraisal: Appraisal, duty: float) -> bool:
@@ -108,7 +113,9 @@ def _ways(bench: Bench, need_m: float, limitation: Limitation) -> str:
     return f"What would make a route: {', or '.join(open_ways)}"
 
 
-def _shortfall(bench: Bench, pipe: Pipe, duty: float | None, raised: Found, limitation: Limitation) -> Shortfall:
+def _shortfall(
+    bench: Bench, pipe: Pipe, duty: float | None, raised: Found, limitation: Limitation, missing_m: float = 0.0
+) -> Shortfall:
     """Say what would make a route that keeps the suction limit."""
     if raised.path is None:
         text = (
@@ -118,7 +125,7 @@ def _shortfall(bench: Bench, pipe: Pipe, duty: float | None, raised: Found, limi
         return Shortfall(pipe.name, duty, "cut off", None, text)
     need = raised.high
     if need <= 0.0:  # the search's own rule is met; the sampled long section misses by a hair
-        need = 0.01
+        need = max(missing_m, _SLACK_M)
     capped = limitation.cap_level_m < limitation.ceiling_level_m
     limit = "the highest lift allowed" if capped else "the suction limit"
     told = _told_m(need)
@@ -152,7 +159,9 @@ def _least_bad(bench: Bench, pipe: Pipe, best: Found, count: int, duty: float | 
     if raised.path is not None:
         figures = replace(best, proven_outside=raised.proven_outside)
         candidate = make_candidate(bench, pipe, raised.path, figures, count, duty)
-        return Offer((candidate,), _shortfall(bench, pipe, duty, raised, limitation), raised.proven_outside)
+        missing = -candidate.appraisal.reserve_left_m
+        shortfall = _shortfall(bench, pipe, duty, raised, limitation, missing)
+        return Offer((candidate,), shortfall, raised.proven_outside)
     if duty is not None:  # more than the fall drives at any length: look at still water instead
         still = best if best.path is not None else least_raise(bench.job, bench.limit_at(pipe, 0.0))
         if still.path is not None:
@@ -172,6 +181,13 @@ def _both(pipe: Pipe, duty: float, still: Found, most: float) -> str:
         f"{_words(pipe, duty)}: the ground is too high by {still.high:.2f} m even for still water, and the fall drives "
         f"at most {most * 1e3:.1f} l/s through one pipe."
     )
+
+
+def _shortest_claim(bench: Bench, duty: float, *, proven: bool) -> str:
+    """Say what the search for a duty proves; lengths are stretched by 0.1 % at a time until the long section fits."""
+    whole = proven or bench.scene.terrain.window.whole
+    where = "on the whole DEM" if whole else "inside the part of the DEM that was read"
+    return f"No path {where} that carries the duty of {duty * 1e3:.4g} l/s is shorter, to 0.1 %."
 
 
 def _counts(bench: Bench) -> Iterator[tuple[int, float]]:
@@ -211,7 +227,8 @@ def offer_of(bench: Bench, pipe: Pipe) -> Offer:
         way, outside = _path_for_duty(bench, pipe, best, duty)
         proven = proven and outside
         if way is not None:
-            found.append(make_candidate(bench, pipe, way, best, count, duty))
+            claim = _shortest_claim(bench, duty, proven=outside)
+            found.append(make_candidate(bench, pipe, way, best, count, duty, claim))
     if found:
         return Offer(tuple(found), None, proven)
     most_pipes = bench.site.demand.most_pipes

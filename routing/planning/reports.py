@@ -28,8 +28,13 @@ class Reporter:
         started = time.perf_counter()
         self.progress(name, 0.0)
 
+        furthest = 0.0
+
         def tick(done: int) -> None:
-            self.progress(name, min(done / cells, 0.99) if cells else 0.0)
+            # A stage may search several times; what it shows never goes back.
+            nonlocal furthest
+            furthest = max(furthest, min(done / cells, 0.99) if cells else 0.0)
+            self.progress(name, furthest)
 
         yield tick
         self.progress(name, 1.0)

@@ -63,7 +63,8 @@ class OpenEnds:
 class Job:
     """One search problem: from the source to the goal on a grid, or between many of them.
 
-    ``band`` marks the cells from which a path may leave the window (see `border_band`). With ``open_ends``, source
+    ``band`` marks the cells from which a path may leave the window (see `border_band`). Moves that are blocked must be
+    blocked in both directions, since lengths are also taken from the goals backwards. With ``open_ends``, source
     and goal are not used.
     """
 

@@ -304,10 +304,8 @@ def weighted_grid(grid: Grid, cell_weight: ArrayLike) -> tuple[Grid, float]:
 def free_ratio(grid: Grid) -> float:
     """Return the largest ratio of shortest grid path to straight line on level, free ground of this grid.
 
-    Worked out from the actual moves, row by row: between two neighbouring moves u, v the ratio for the unit
-    direction w is the length of w written as a sum of both, which is largest where w halves the angle in the
-    sense of 1 / cos(half the angle) for equal moves; for oblong cells the largest is found by the closed form
-    of the polar of a segment.
+    Worked out from the actual moves, row by row. A direction between two neighbouring moves is made up of both; that
+    is longest, against the straight line, half way between them: 1 / cos(half the angle), for moves of any length.
 
     Returns
     -------
@@ -317,16 +315,12 @@ def free_ratio(grid: Grid) -> float:
     worst = 1.0
     for step_x, step_y in {(float(x), float(y)) for x, y in zip(grid.step_x_m, grid.step_y_m, strict=True)}:
         vectors = np.column_stack([grid.moves.dcol * step_x, grid.moves.drow * step_y])
-        worst = max(worst, _worst_gauge(vectors))
+        worst = max(worst, _worst_ratio(vectors))
     return worst
 
 
-def _worst_gauge(vectors: FloatArray) -> float:
-    """Largest length of shortest sums of the vectors over the length of their sum.
-
-    The norm of "shortest sum" has as unit ball the convex hull of the unit vectors of the moves: the worst
-    direction is the one normal to the hull's edge nearest to the centre, at 1 over its distance.
-    """
+def _worst_ratio(vectors: FloatArray) -> float:
+    """1 / cos(half the largest angle between neighbouring vectors)."""
     angle = np.sort(np.arctan2(vectors[:, 1], vectors[:, 0]))
     gaps = np.diff(np.append(angle, angle[0] + 2.0 * np.pi))
     return float(1.0 / np.cos(0.5 * gaps.max()))

@@ -313,7 +313,7 @@ def settle(
             col = cell - row * cols
             here, from_level = length[cell], level[cell]
             careful = (flags[cell] & CAREFUL) != 0
-            strict = careful or has_blocked
+            strict = careful or (has_blocked and ground.blocked[cell] != 0)
             for move in range(step.size):
                 if careful:
                     row_to, col_to = row + moves.drow[move], col + moves.dcol[move]
