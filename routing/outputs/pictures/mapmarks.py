@@ -14,7 +14,7 @@ from routing.outputs.pictures.framing import Frame
 from routing.outputs.pictures.mapview import Entry
 from routing.outputs.pictures.placing import Labels
 from routing.outputs.pictures.shapes import line_points
-from routing.outputs.pictures.style import BLACK, FURTHER_ROUTES, PAPER, ROUTE_LOOKS, SKY, YELLOW, LineLook
+from routing.outputs.pictures.style import BLACK, FURTHER_ROUTES, PAPER, ROUTE_LOOKS, SKY, YELLOW
 from routing.outputs.pictures.subject import Subject
 from routing.outputs.pictures.texts import shown
 from routing.outputs.wording import fixed
@@ -30,11 +30,17 @@ class MarkLook:
     size: float
 
 
+#: Points of the line of each route, by name.
+Paths = dict[str, tuple[FloatArray, FloatArray]]
+
+#: A route that keeps closer to another than this share of the map's width is not drawn in a way of its own.
+_APART = 0.012
+
 INTAKE, OUTLET = MarkLook("o", PAPER, 6.5), MarkLook("s", PAPER, 6.0)
-CREST, CROSSING, CROSSING_UNUSED = MarkLook("^", YELLOW, 6.0), MarkLook("D", SKY, 4.8), MarkLook("D", PAPER, 4.0)
+CREST, CROSSING, CROSSING_UNUSED = MarkLook("^", YELLOW, 8.5), MarkLook("D", SKY, 4.2), MarkLook("D", PAPER, 4.0)
 #: Largest mark in the legend, whose lines are close.
 _LEGEND_SIZE = 8.0
-LOWEST_CREST = MarkLook("o", "none", 11.0)
+LOWEST_CREST = MarkLook("o", "none", 12.5)
 
 
 @dataclass(frozen=True, slots=True)
@@ -54,30 +60,50 @@ def draw_routes(axes: Axes, subject: Subject, frame: Frame, labels: Labels) -> l
     The strongest is drawn last, so that nothing hides it.
     """
     paths = {route.name: line_points(route.line, frame) for route in subject.routes}
-    looks = {route.name: look_of(number) for number, route in enumerate(subject.routes)}
+    named = named_routes(subject, frame, paths)
+    looks = {route.name: look for route, look in zip(named, ROUTE_LOOKS, strict=False)}
     for number, (name, (x, y)) in reversed(list(enumerate(paths.items()))):
-        look, order = looks[name], 8.0 - 0.1 * min(number, 15)
-        axes.plot(x, y, color=PAPER, linewidth=look.width + 1.4, solid_capstyle="round", zorder=6.0)
+        look = looks.get(name, FURTHER_ROUTES)
+        order = 7.0 if name not in looks else 8.0 - 0.01 * min(number, 50)
+        axes.plot(x, y, color=PAPER, linewidth=look.width + 1.4, solid_capstyle="round", zorder=order - 1.0)
         axes.plot(x, y, color=look.colour, linestyle=look.style, linewidth=look.width, zorder=order)
         labels.avoid(x, y)
-    marks = [mark for mark in _marks(subject) if _inside(mark, frame)]
+    marks = [mark for mark in _marks(subject, named) if _inside(mark, frame)]
     for mark in marks:
         axes.plot(mark.x, mark.y, zorder=9, linestyle="none", **_marker(mark.look))
         labels.avoid_mark(mark.x, mark.y, mark.look.size + 1.0)
     for mark in marks:
         if mark.label:
             labels.place(mark.label, mark.x, mark.y, fontweight="bold" if mark.look in {INTAKE, OUTLET} else "normal")
-    _name_routes(subject, paths, labels)
-    return [*_route_entries(subject), *_mark_entries(marks)]
+    _name_routes(named, paths, labels)
+    return [*_route_entries(subject, named), *_mark_entries(marks)]
 
 
 def _inside(mark: Mark, frame: Frame) -> bool:
     return frame.west <= mark.x <= frame.east and frame.south <= mark.y <= frame.north
 
 
-def look_of(number: int) -> LineLook:
-    """Return how the route of that number in the ranking is drawn."""
-    return ROUTE_LOOKS[number] if number < len(ROUTE_LOOKS) else FURTHER_ROUTES
+def named_routes(subject: Subject, frame: Frame, paths: Paths) -> list[Route]:
+    """Return the routes that are named and drawn each in its own way: the best, and what lies apart from it.
+
+    Of routes so close together that they would hide each other only the one ranked first is among them; of those
+    that are left, the first over each crossing goes before the others.
+    """
+    if not subject.routes:
+        return []
+    first, order = subject.routes[0], {route.name: number for number, route in enumerate(subject.routes)}
+    # The first route over each crossing; the dictionary keeps the ranking.
+    opening: dict[str, Route] = {}
+    for route in subject.routes:
+        opening.setdefault(route.crossing, route)
+    openers = [route for route in opening.values() if route is not first]
+    rest = [route for route in subject.routes[1:] if opening[route.crossing] is not route]
+    named, least = [first], _APART * (frame.east - frame.west)
+    for route in (*openers, *rest):
+        apart = [_farthest(paths[route.name], paths[other.name]) for other in named]
+        if len(named) < len(ROUTE_LOOKS) and min(apart) > least:
+            named.append(route)
+    return sorted(named, key=lambda route: order[route.name])
 
 
 def _marker(look: MarkLook) -> dict[str, Any]:
@@ -90,13 +116,16 @@ def _marker(look: MarkLook) -> dict[str, Any]:
     }
 
 
-def _marks(subject: Subject) -> Iterator[Mark]:
+def _marks(subject: Subject, named: list[Route]) -> Iterator[Mark]:
     plan, setting = subject.plan, subject.plan.setting
     route = subject.routes[0] if subject.routes else None
     start = (setting.intake.x, setting.intake.y) if route is None else (float(route.x[0]), float(route.y[0]))
     end = (setting.outlet.x, setting.outlet.y) if route is None else (float(route.x[-1]), float(route.y[-1]))
     yield Mark(*start, INTAKE, "intake", "intake")
     yield Mark(*end, OUTLET, "outlet", "outlet")
+    for other in named[1:]:  # ends left open may lie elsewhere for each route
+        yield from _other_end(float(other.x[0]), float(other.y[0]), start, INTAKE, "intake")
+        yield from _other_end(float(other.x[-1]), float(other.y[-1]), end, OUTLET, "outlet")
     if route is not None:
         k = route.crest_index
         label = f"crest {fixed(route.crest_m, 2)} m"
@@ -109,19 +138,31 @@ def _marks(subject: Subject) -> Iterator[Mark]:
         yield Mark(crest.x, crest.y, LOWEST_CREST, "", legend)
 
 
+def _other_end(x: float, y: float, known: tuple[float, float], look: MarkLook, legend: str) -> Iterator[Mark]:
+    if (x, y) != known:
+        yield Mark(x, y, look, "", legend)
+
+
 def _crossing_mark(crossing: Crossing) -> Mark:
     if crossing.used:
         return Mark(crossing.x, crossing.y, CROSSING, shown(crossing.name), "crossing with a route over it")
     return Mark(crossing.x, crossing.y, CROSSING_UNUSED, shown(crossing.name), "crossing without a route")
 
 
-def _name_routes(subject: Subject, paths: dict[str, tuple[FloatArray, FloatArray]], labels: Labels) -> None:
+def _name_routes(named: list[Route], paths: Paths, labels: Labels) -> None:
     """Name each route where it is farthest from the others."""
-    for route in subject.routes[: len(ROUTE_LOOKS)]:
-        x, y = paths[route.name]
-        at_x, at_y = _own_place(x, y, [paths[other] for other in paths if other != route.name])
-        colour = look_of(subject.routes.index(route)).colour
-        labels.place(shown(route.name), at_x, at_y, color=_dark(colour), fontweight="bold")
+    for route, look in zip(named, ROUTE_LOOKS, strict=False):
+        others = [paths[other.name] for other in named if other is not route]
+        at_x, at_y = _own_place(*paths[route.name], others)
+        labels.place(shown(route.name), at_x, at_y, color=_dark(look.colour), fontweight="bold")
+
+
+def _farthest(path: tuple[FloatArray, FloatArray], other: tuple[FloatArray, FloatArray]) -> float:
+    """Return how far a line gets away from another, taken at 100 places along it."""
+    x, y = path
+    along = np.concatenate([[0.0], np.cumsum(np.hypot(np.diff(x), np.diff(y)))])
+    at = np.linspace(0.0, along[-1], 100)
+    return float(_distances(np.interp(at, along, x), np.interp(at, along, y), *other).max())
 
 
 def _own_place(x: FloatArray, y: FloatArray, others: list[tuple[FloatArray, FloatArray]]) -> tuple[float, float]:
@@ -149,16 +190,15 @@ def _dark(colour: str) -> str:
     return colour if colour in {ROUTE_LOOKS[0].colour, ROUTE_LOOKS[5].colour} else BLACK
 
 
-def _route_entries(subject: Subject) -> Iterator[Entry]:
-    for number, route in enumerate(subject.routes[: len(ROUTE_LOOKS)]):
-        look = look_of(number)
+def _route_entries(subject: Subject, named: list[Route]) -> Iterator[Entry]:
+    for route, look in zip(named, ROUTE_LOOKS, strict=False):
         handle = Line2D([], [], color=look.colour, linestyle=look.style, linewidth=look.width)
         yield Entry(handle, f"{shown(route.name)}: {fixed(route.length_m, 0)} m, crest {fixed(route.crest_m, 2)} m")
-    further: tuple[Route, ...] = subject.routes[len(ROUTE_LOOKS) :]
+    further = [shown(route.name) for route in subject.routes if all(route is not other for other in named)]
     if further:
         look = FURTHER_ROUTES
         handle = Line2D([], [], color=look.colour, linestyle=look.style, linewidth=look.width)
-        yield Entry(handle, f"{len(further)} more, ranked after these")
+        yield Entry(handle, f"{len(further)} more: {', '.join(further)}")
 
 
 def _mark_entries(marks: list[Mark]) -> Iterator[Entry]:

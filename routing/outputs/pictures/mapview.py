@@ -93,6 +93,9 @@ def _water(axes: Axes, plan: Plan, frame: Frame) -> Iterator[Entry]:
                 | {"zorder": 2.2},
             )
         )
+    elif plan.setting.lowest.water_m < plan.setting.present.water_m:
+        # A DEM that holds the water's surface knows no shore below it.
+        yield Entry(Line2D([], [], linestyle="none"), "(lowest shore not in the DEM)")
     for body, name, look in bodies:
         patch = None if body.shoreline.is_empty else area_patch(body.shoreline, frame, **look)
         if patch is not None:

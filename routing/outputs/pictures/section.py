@@ -38,6 +38,8 @@ class Section:
         Which samples lie in the water body, at either level.
     crossing_m
         Chainage at which the route passes its crossing, ``None`` where none is known.
+    outlet_m, receiving_m, mouth_m
+        Level of the route's outlet axis; of that or the tailwater, if higher; of its intake mouth, where known.
     """
 
     chainage_m: FloatArray
@@ -50,6 +52,9 @@ class Section:
     wet_present: BoolArray
     wet_lowest: BoolArray
     crossing_m: float | None
+    outlet_m: float
+    receiving_m: float
+    mouth_m: float | None
 
     @property
     def range_m(self) -> tuple[float, float]:
@@ -71,6 +76,8 @@ def section_of(subject: Subject, scheme: Scheme) -> Section:
     if not len(crown) == len(scheme.appraisal.crown_pressure_pa) == len(chainage):
         raise OvercrestError(f"the appraisal of scheme {scheme.rank} does not fit route {route.name}")
     crest, worst = (int(np.argmin(np.abs(chainage - at))) for at in (run.crest_chainage_m, run.governing_chainage_m))
+    lowest = plan.setting.lowest
+    outlet = lowest.outlet_m if route.outlet_m is None else route.outlet_m
     kept = thinned(chainage, route.ground_m, (crest, worst))
     return Section(
         chainage[kept],
@@ -83,6 +90,9 @@ def section_of(subject: Subject, scheme: Scheme) -> Section:
         _wet(plan, route, plan.setting.present.water_m, plan.water_body)[kept],
         _wet(plan, route, plan.setting.lowest.water_m, plan.lowest_water)[kept],
         _crossing_m(plan, scheme),
+        outlet,
+        max(outlet, outlet if lowest.tailwater_m is None else lowest.tailwater_m),
+        lowest.intake_mouth_m if route.mouth_m is None else route.mouth_m,
     )
 
 

@@ -23,8 +23,10 @@ from routing.records import FloatArray, Scheme
 
 #: Room for labels above and below the lines, in inches.
 _ABOVE_IN, _BELOW_IN = 0.44, 0.26
+#: Room for the water levels before the intake, and behind the outlet, as shares of the length.
+_LEFT, _RIGHT = 0.165, 0.03
 #: Where the crown pressure is least.
-WORST = MarkLook("X", style.ORANGE, 7.5)
+WORST = MarkLook("X", style.ORANGE, 6.5)
 _LINES: tuple[tuple[str, str, LineLook], ...] = (
     ("ground_m", "ground", style.GROUND),
     ("grade_m", "hydraulic grade line", style.GRADE),
@@ -45,8 +47,8 @@ def draw_section(axes: Axes, subject: Subject, section: Section, scheme: Scheme,
         if name != "ground_m":
             entries.append(Entry(_handle(look), text))
     entries += _waters(axes, subject, section, labels)
-    _drop(axes, section, subject)
-    entries += _places(axes, subject, section, scheme, labels)
+    _drop(axes, section)
+    entries += _places(axes, section, scheme, labels)
     return entries
 
 
@@ -57,15 +59,16 @@ def set_limits(axes: Axes, subject: Subject, section: Section) -> float:
     place = axes.get_position()
     width_in, height_in = place.width * figure.get_figwidth(), place.height * figure.get_figheight()  # type: ignore[union-attr]
     low, high = section.range_m
-    low = min(low, setting.lowest.receiving_m, setting.lowest.outlet_m)
+    low = min(low, section.outlet_m, section.receiving_m)
     high = max(high, setting.present.water_m)
-    span = max(high - low, 1e-3 * section.chainage_m[-1], 0.5)
+    span = max(high - low, 1e-3 * float(section.chainage_m[-1]), 0.5)
     room_in = height_in - _ABOVE_IN - _BELOW_IN
-    length = float(section.chainage_m[-1]) * 1.06
+    total = float(section.chainage_m[-1])
+    length = total * (1.0 + _LEFT + _RIGHT)
     times = exaggeration((length / width_in) / (span / room_in))
     scale = max(length / width_in, times * span / room_in)
-    shown_m, middle = scale * width_in, 0.5 * section.chainage_m[-1]
-    axes.set_xlim(middle - 0.5 * shown_m, middle + 0.5 * shown_m)
+    wide = 0.5 * (scale * width_in - length)
+    axes.set_xlim(-_LEFT * total - wide, (1.0 + _RIGHT) * total + wide)
     spare = scale * room_in / times - span
     axes.set_ylim(low - _BELOW_IN * scale / times - 0.5 * spare, high + _ABOVE_IN * scale / times + 0.5 * spare)
     return times
@@ -74,7 +77,7 @@ def set_limits(axes: Axes, subject: Subject, section: Section) -> float:
 def name_axes(axes: Axes, subject: Subject, ruler: Ruler) -> None:
     """Draw the axes' grid and name them, with units and datum."""
     facts = subject.plan.terrain.facts
-    for axis, (low, high), most in ((axes.xaxis, axes.get_xlim(), 11.0), (axes.yaxis, axes.get_ylim(), 6.0)):
+    for axis, (low, high), most in ((axes.xaxis, axes.get_xlim(), 11.0), (axes.yaxis, axes.get_ylim(), 8.0)):
         step = round_step(high - low, most)
         at = multiples(low, high, step)
         if axis is axes.xaxis:
@@ -90,9 +93,9 @@ def name_axes(axes: Axes, subject: Subject, ruler: Ruler) -> None:
     axes.set_ylabel(f"Level, m\n{datum}", fontsize=style.SMALL, labelpad=3)
 
 
-def _drop(axes: Axes, section: Section, subject: Subject) -> None:
+def _drop(axes: Axes, section: Section) -> None:
     """Draw what the outlet's valve and exit use up: the grade line falls to the receiving level there."""
-    end, low = float(section.chainage_m[-1]), subject.plan.setting.lowest.receiving_m
+    end, low = float(section.chainage_m[-1]), section.receiving_m
     axes.plot([end, end], [section.grade_m[-1], low], color=style.BLUE, linestyle=":", linewidth=1.2, zorder=4.5)
 
 
@@ -103,12 +106,12 @@ def _handle(look: LineLook) -> Line2D:
 def _waters(axes: Axes, subject: Subject, section: Section, labels: Labels) -> list[Entry]:
     setting = subject.plan.setting
     present, lowest = setting.present.water_m, setting.lowest.water_m
-    left = max(axes.get_xlim()[0], -0.02 * section.chainage_m[-1])
+    left = -0.16 * float(section.chainage_m[-1])
     levels = [(lowest, f"lowest level {fixed(lowest, 2)} m", style.LOWEST, section.wet_lowest)]
     if abs(present - lowest) > 0.005:
         levels.append((present, f"present level {fixed(present, 2)} m", style.PRESENT, section.wet_present))
     else:
-        levels = [(lowest, f"present and lowest level {fixed(lowest, 2)} m", style.PRESENT, section.wet_present)]
+        levels = [(lowest, f"present and lowest\nlevel {fixed(lowest, 2)} m", style.PRESENT, section.wet_present)]
     entries = []
     for level, text, look, wet in reversed(levels):
         line = np.where(wet, level, np.nan)
@@ -118,8 +121,10 @@ def _waters(axes: Axes, subject: Subject, section: Section, labels: Labels) -> l
             section.chainage_m, section.ground_m, level, where=wet, color=style.SKY, alpha=0.3, linewidth=0, zorder=1.5
         )
         labels.avoid(np.array([left, 0.0]), np.array([level, level]))
-        labels.place(text, left, level, color=style.BLUE, sides=((1, 1), (1, -1)))
-        name = text.rpartition(" level")[0]
+        labels.place(
+            text, left, level, color=style.BLUE, sides=((1, -1), (1, 1)) if level < present else ((1, 1), (1, -1))
+        )
+        name = text.replace("\n", " ").rpartition(" level")[0]
         entries.append(Entry(_handle(look), f"water at the {name} level"))
     tail = setting.lowest.tailwater_m
     if tail is not None:
@@ -130,11 +135,11 @@ def _waters(axes: Axes, subject: Subject, section: Section, labels: Labels) -> l
     return entries
 
 
-def _places(axes: Axes, subject: Subject, section: Section, scheme: Scheme, labels: Labels) -> list[Entry]:
+def _places(axes: Axes, section: Section, scheme: Scheme, labels: Labels) -> list[Entry]:
     """Mark and name crest, lowest pressure, ends and crossing."""
-    setting, run = subject.plan.setting, scheme.appraisal.duty
-    end = Spot(float(section.chainage_m[-1]), setting.lowest.outlet_m)
-    mouth = setting.lowest.intake_mouth_m
+    run = scheme.appraisal.duty
+    end = Spot(float(section.chainage_m[-1]), section.outlet_m)
+    mouth = section.mouth_m
     start = Spot(0.0, float(section.crown_m[0]) if mouth is None else mouth)
     crest = f"crest: crown {fixed(section.crest.level_m, 2)} m,\n{fixed(run.lift_m, 2)} m above the lowest level"
     at_crest = crest.replace("\n", " ") + ";"
@@ -149,7 +154,8 @@ def _places(axes: Axes, subject: Subject, section: Section, scheme: Scheme, labe
     for spot, look, _, legend in spots:
         mark: dict[str, Any] = {"marker": look.marker, "markersize": look.size, "markerfacecolor": look.fill}
         mark |= {"markeredgecolor": style.BLACK, "markeredgewidth": 0.9, "linestyle": "none"}
-        axes.plot(spot.chainage_m, spot.level_m, zorder=9, clip_on=False, **mark)
+        # Crest and lowest pressure may be close: the smaller mark goes on top.
+        axes.plot(spot.chainage_m, spot.level_m, zorder=9 + (look is WORST), clip_on=False, **mark)
         labels.avoid_mark(spot.chainage_m, spot.level_m, look.size + 1.0)
         entries.append(Entry(Line2D([], [], **mark), legend))
     for spot, _, text, _ in spots:
