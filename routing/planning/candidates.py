@@ -17,6 +17,8 @@ from routing.search import Found, Limitation, PathEdges, largest_discharge, leas
 _ROUNDS = 5
 _SLACK_M = 1e-6
 _HAIR = 1e-9
+# Share of a discharge given up for a shorter route: at the very limit rounding may hide every path.
+_EASE = 1e-5
 #: Deepest trench that the site file takes (search.bed_offset_m).
 DEEPEST_TRENCH_M = 10.0
 
@@ -202,7 +204,7 @@ def _straightened(bench: Bench, pipe: Pipe, path: PathEdges, discharge: float) -
     flow = bench.flow(pipe)
     if discharge >= flow.carried_at_length(path.length_m) * (1.0 - _HAIR):
         return path  # the fall governs: a shorter path would carry more
-    found = shortest_path(bench.job, flow.limit_at(discharge * (1.0 - _HAIR)))
+    found = shortest_path(bench.job, flow.limit_at(discharge * (1.0 - _EASE)))
     return found.path if found.path is not None and found.path.length_m < path.length_m else path
 
 

@@ -105,14 +105,15 @@ def _told_on_shapes(site: Site, on: BoolArray, low: BoolArray) -> str:
 
 def _told_anywhere(site: Site, low: BoolArray, drained: BoolArray, far: BoolArray) -> str:
     counts = [int(np.count_nonzero(cells)) for cells in (low, drained, far)]
-    told = (
-        f"The outlet may lie in {counts[2]} cells: {counts[0]} cells outside the water are low enough; "
-        f"{counts[0] - counts[1]} of them lie in closed hollows, out of which water would have to rise by more than "
-        f"{DRAIN_TOLERANCE_M:g} m, and are left out, since a hollow fills up"
-    )
+    told = f"The outlet may lie in {counts[2]} cells: {counts[0]} cells outside the water are low enough"
+    if counts[1] < counts[0]:
+        told += (
+            f"; {counts[0] - counts[1]} of them lie in closed hollows, out of which water would have to rise by more than "
+            f"{DRAIN_TOLERANCE_M:g} m, and are left out, since a hollow fills up"
+        )
     if site.outlet.beyond_toe_m > 0.0:
         told += (
             f"; {counts[1] - counts[2]} lie nearer than {site.outlet.beyond_toe_m:g} m to the toe, where the ground "
             "beyond the barrier first falls back to the present level"
         )
-    return told + "."
+    return f"{told}."
