@@ -1,10 +1,11 @@
-"""Puts into the pages what the program really says: the reference pages, and the excerpts of a run on the demo site.
+"""Puts into the pages what the program really says: reference pages, excerpts of a run on the demo site, its picture.
 
 Run it as ``python docs/refresh.py`` after a change that shows. A test makes everything again and compares.
 """
 
 from __future__ import annotations
 
+import io
 import re
 import shutil
 import subprocess
@@ -12,12 +13,18 @@ import sys
 import tempfile
 from pathlib import Path
 
+# The picture is made small here; Pillow comes with matplotlib.
+from PIL import Image
+from PIL.PngImagePlugin import PngInfo
+
 from routing.commands.reference import commands_page
 from routing.outputs import fields_page
 from routing.site import reference_page
 
 ROOT = Path(__file__).resolve().parent.parent
 SITE = "sample_dem/brackenmere/site.toml"
+#: The picture in README and how-to, its width in dots and its colours.
+PICTURE, WIDTH, COLOURS = ROOT / "docs" / "pictures" / "brackenmere.png", 1400, 64
 #: The change that the tutorial makes to the demo site, after which no route works.
 LIMIT = "highest_lift_m = 4.0"
 #: An excerpt: its name in a comment that readers do not see, then a block.
@@ -77,6 +84,29 @@ def refreshed(page: str, shown: dict[str, list[str]]) -> str:
     return MARK.sub(lambda mark: "\n".join([f"{mark[1]} -->", "```text", *shown[mark[1]], "```"]), page)
 
 
+def picture() -> bytes:
+    """Draw the demo job; return its picture small, with the text alternative that it came with."""
+    with tempfile.TemporaryDirectory() as name:
+        folder = Path(name)
+        shutil.copytree(ROOT / "sample_dem", folder / "sample_dem")
+        run(folder, "plan", SITE, "--out", "plan", "--quiet")
+        return reduced(folder / "plan" / "overview.png")
+
+
+def reduced(file: Path) -> bytes:
+    """Return a picture at a width for pages, in few colours, with its text."""
+    with Image.open(file) as large:
+        told = PngInfo()
+        for name in ("Title", "Description"):
+            told.add_text(name, large.info[name])
+        size = (WIDTH, round(WIDTH * large.height / large.width))
+        small = large.convert("RGB").resize(size, Image.Resampling.LANCZOS)
+    data = io.BytesIO()
+    few = small.quantize(COLOURS, dither=Image.Dither.NONE)
+    few.save(data, "PNG", optimize=True, pnginfo=told)
+    return data.getvalue()
+
+
 def pages() -> dict[Path, str]:
     """Return the text that every page with made parts should have."""
     shown = excerpts()
@@ -94,3 +124,5 @@ def pages() -> dict[Path, str]:
 if __name__ == "__main__":
     for target, content in pages().items():
         target.write_text(content, encoding="utf-8", newline="\n")
+    PICTURE.parent.mkdir(exist_ok=True)
+    PICTURE.write_bytes(picture())

@@ -132,6 +132,19 @@ def test_what_is_shown_is_what_really_comes_out(refresh):
         assert path.read_text(encoding="utf-8") == text, f"{name_of(path)} is stale: run python docs/refresh.py"
 
 
+def test_the_picture_is_that_of_the_demo(refresh, demo_run):
+    """Letters may be drawn a little differently elsewhere, so its words are compared, not its dots."""
+    from PIL import Image
+
+    folder, _ = demo_run
+    assert refresh.PICTURE.stat().st_size < 200_000
+    with Image.open(folder / "site-plan" / "overview.png") as drawn, Image.open(refresh.PICTURE) as kept:
+        assert kept.info["Description"] == drawn.info["Description"], "run python docs/refresh.py"
+        assert kept.width == refresh.WIDTH
+    again = refresh.reduced(folder / "site-plan" / "overview.png")
+    assert len(again) < 200_000
+
+
 def test_an_excerpt_is_made_anew_and_the_rest_kept(refresh):
     page = "before\n\n<!-- shown: look -->\n```text\nold\n```\n\nafter\n\n```text\nkept\n```\n"
     assert refresh.refreshed(page, {"look": ["new", "lines"]}) == page.replace("old", "new\nlines")

@@ -100,7 +100,7 @@ def _water(axes: Axes, plan: Plan, frame: Frame) -> Iterator[Entry]:
         patch = None if body.shoreline.is_empty else area_patch(body.shoreline, frame, **look)
         if patch is not None:
             axes.add_patch(patch)
-            yield Entry(Patch(**look), f"water, {name} level {fixed(body.level_m, 2)} m")
+            yield Entry(Patch(**look), f"{name} water, {fixed(body.level_m, 2)} m")
 
 
 def _zone(axes: Axes, zone: Zone, frame: Frame) -> Iterator[Entry]:

@@ -30,8 +30,8 @@ CAUTION = (
     "Drawdown can endanger a dam and its banks; warn people downstream."
 )
 #: Places in inches from the page's lower left: left, bottom, width, height.
-MAP_IN = (0.72, 3.70, 6.95, 3.70)
-SIDE_IN = (7.98, 3.30, 3.38, 4.10)
+MAP_IN = (0.72, 3.70, 6.80, 3.70)
+SIDE_IN = (7.80, 3.30, 3.56, 4.10)
 SECTION_IN = (0.86, 0.98, 10.50, 2.16)
 _LINE_IN = 0.142
 
