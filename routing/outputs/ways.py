@@ -150,13 +150,21 @@ def either(words: Sequence[str]) -> str:
 
 
 def least_bad(plan: Plan) -> list[Need]:
-    """Return each route of a plan without a feasible one, and what it would need, from the least on."""
+    """Return the routes of a plan without a feasible one, and what each would need, from the least on.
+
+    Left out is what is neither shorter nor nearer to working than another: what stays is the choice there is
+    between length and digging.
+    """
     needs: dict[str, Need] = {}
     for scheme in sorted(plan.schemes, key=_badness):
         needs.setdefault(scheme.route.name, _need_of_scheme(plan, scheme))
     for row in own_samples(plan):
         needs.setdefault(row.sample.route.name, _need_of_sample(plan, row))
-    return sorted(needs.values(), key=lambda need: (not need.driven, need.missing_m))
+    kept: list[Need] = []
+    for need in sorted(needs.values(), key=lambda need: (not need.driven, need.missing_m, need.length_m)):
+        if all(round(need.length_m) < round(better.length_m) for better in kept):
+            kept.append(need)
+    return kept
 
 
 def _not_driven(appraisal: Appraisal) -> str:
@@ -177,27 +185,38 @@ def _badness(scheme: Scheme) -> tuple[float, ...]:
     return (not driven, len(_others_broken(scheme)), missing_m(scheme.appraisal), scheme.rank)
 
 
+def _needed(plan: Plan, appraisal: Appraisal) -> str:
+    """Return what would make a route carry its duty; empty where nothing is missing."""
+    needed = []
+    if missing_m(appraisal) > 0.0:
+        needed.append(remedies(plan, appraisal))
+    if not is_driven(appraisal):
+        most, asked = litres(appraisal.largest.energy_discharge_m3s), litres(appraisal.duty_m3s)
+        needed.append(f"a wider pipe or more fall (for {asked}, not {most})")
+    return f"needs {', and '.join(needed)}" if needed else ""
+
+
 def _need_of_scheme(plan: Plan, scheme: Scheme) -> Need:
-    appraisal, others = scheme.appraisal, _others_broken(scheme)
-    missing, driven = missing_m(appraisal), is_driven(appraisal)
-    parts = [] if driven else [f"{_not_driven(appraisal)}: needs more fall, pipes or bore"]
-    if missing > 0.0:
-        parts.append(f"needs {remedies(plan, appraisal)}")
-    if not parts:
-        parts, others = [scheme.verdict.reason.rstrip(".")], []
-    if others:
-        parts.append(f"unfit besides: {', '.join(others)}")
-    pipes = f"{scheme.count} x {scheme.pipe.name}"
-    route = scheme.route
-    return Need(route.name, route.crossing, route.length_m, appraisal.lift_m, pipes, missing, driven, "; ".join(parts))
+    route, appraisal, others = scheme.route, scheme.appraisal, _others_broken(scheme)
+    text = _needed(plan, appraisal)
+    if not text:
+        text = scheme.verdict.reason.rstrip(".")
+    elif others:
+        text = f"{text}; also unfit: {', '.join(others)}"
+    return Need(
+        route.name,
+        route.crossing,
+        route.length_m,
+        appraisal.lift_m,
+        f"{scheme.count} x {scheme.pipe.name}",
+        missing_m(appraisal),
+        is_driven(appraisal),
+        text,
+    )
 
 
 def _need_of_sample(plan: Plan, row: SampleRow) -> Need:
     sample, appraisal, required = row.sample, row.sample.appraisal, plan.site.demand.discharge_m3s
-    driven = is_driven(appraisal)
-    parts = [] if driven else [f"{_not_driven(appraisal)}: needs more fall, pipes or bore"]
-    if row.missing_m > 0.0:
-        parts.append(f"needs {remedies(plan, appraisal)}")
     count = round(required / appraisal.duty_m3s) if required and appraisal.duty_m3s else 1
     return Need(
         sample.route.name,
@@ -206,6 +225,6 @@ def _need_of_sample(plan: Plan, row: SampleRow) -> Need:
         appraisal.lift_m,
         f"{count} x {sample.pipe}",
         row.missing_m,
-        driven,
-        "; ".join(parts or [row.reason]),
+        is_driven(appraisal),
+        _needed(plan, appraisal) or row.reason,
     )

@@ -123,12 +123,26 @@ def test_a_duty_missed_by_rounding_is_driven(plan):
 def test_least_bad_routes_in_order(make):
     plan = make.beside_no_route()
     found = least_bad(plan)
-    assert [need.route for need in found] == ["R2", "R3", "R4"]
-    assert [need.crossing for need in found] == ["C2", "", ""]
+    assert [need.route for need in found] == ["R2", "R3"]
+    assert [need.crossing for need in found] == ["C2", ""]
     assert found[0].pipes == "1 x PE 250 SDR 17"
     assert found[0].text == "needs 0.80 m of trench, level or reserve"
     assert found[1].missing_m == pytest.approx(1.0)
-    assert found[2].text == "the fall drives 60.0 l/s of the 100 l/s asked of one pipe: needs more fall, pipes or bore"
+
+
+def test_what_is_neither_shorter_nor_nearer_to_working_is_left_out(make):
+    plan = make.beside_no_route()
+    high, weak = plan.samples
+    assert weak.route.length_m > high.route.length_m
+    assert [need.route for need in least_bad(replace(plan, schemes=(), samples=(weak, high)))] == ["R3"]
+    short = replace(weak, route=replace(weak.route, chainage_m=0.5 * weak.route.chainage_m))
+    found = least_bad(replace(plan, schemes=(), samples=(short, high)))
+    assert [need.route for need in found] == ["R3", "R4"]
+    assert found[1].text == "needs a wider pipe or more fall (for 100 l/s, not 60.0 l/s)"
+    both = replace(short, appraisal=replace(weak.appraisal, duty=replace(weak.appraisal.duty, reserve_left_m=-0.5)))
+    assert least_bad(replace(plan, schemes=(), samples=(both,)))[0].text == (
+        "needs 0.50 m of trench, level or reserve, and a wider pipe or more fall (for 100 l/s, not 60.0 l/s)"
+    )
 
 
 def test_the_pipe_that_misses_by_least_stands_for_a_route(make):
@@ -151,7 +165,7 @@ def test_what_no_trench_mends_is_told_besides(make):
     (scheme,) = plan.schemes
     checks = tuple(replace(c, grade="unfit") if c.name == "collapse" else c for c in scheme.verdict.checks)
     thin = replace(scheme, verdict=replace(scheme.verdict, checks=checks))
-    assert least_bad(replace(plan, schemes=(thin,)))[0].text.endswith("level or reserve; unfit besides: collapse")
+    assert least_bad(replace(plan, schemes=(thin,)))[0].text.endswith("level or reserve; also unfit: collapse")
     kept = replace(thin, appraisal=replace(thin.appraisal, duty=replace(thin.appraisal.duty, reserve_left_m=0.4)))
     dear = replace(kept, verdict=replace(kept.verdict, reason="the wall is too thin."))
     assert least_bad(replace(plan, schemes=(dear,)))[0].text == "the wall is too thin"
