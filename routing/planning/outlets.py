@@ -108,8 +108,8 @@ def _told_anywhere(site: Site, low: BoolArray, drained: BoolArray, far: BoolArra
     told = f"The outlet may lie in {counts[2]} cells: {counts[0]} cells outside the water are low enough"
     if counts[1] < counts[0]:
         told += (
-            f"; {counts[0] - counts[1]} of them lie in closed hollows, out of which water would have to rise by more than "
-            f"{DRAIN_TOLERANCE_M:g} m, and are left out, since a hollow fills up"
+            f"; {counts[0] - counts[1]} of them lie in closed hollows, out of which water would have to rise by more "
+            f"than {DRAIN_TOLERANCE_M:g} m, and are left out, since a hollow fills up"
         )
     if site.outlet.beyond_toe_m > 0.0:
         told += (
