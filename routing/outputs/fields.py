@@ -14,11 +14,11 @@ from routing.outputs.hydraulic_fields import DISCHARGE_FIELDS, GEOMETRY_FIELDS, 
 from routing.outputs.other_fields import (
     CHECK_FIELDS,
     COST_FIELDS,
-    POINT_FIELDS,
     SECTION_FIELDS,
     WATER_FIELDS,
     ZONE_FIELDS,
 )
+from routing.outputs.point_fields import POINT_FIELDS
 from routing.outputs.ways_fields import CROSSING_FIELDS, SAMPLE_FIELDS
 from routing.records import Scheme
 

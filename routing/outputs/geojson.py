@@ -14,7 +14,8 @@ from routing.outputs.field import row
 from routing.outputs.fields import SCHEME_FIELDS
 from routing.outputs.geometry import Drawn, draw_line, draw_point, draw_polygon
 from routing.outputs.lonlat import LonLat, joined
-from routing.outputs.other_fields import POINT_FIELDS, WATER_FIELDS, ZONE_FIELDS, MapPoint
+from routing.outputs.other_fields import WATER_FIELDS, ZONE_FIELDS
+from routing.outputs.point_fields import POINT_FIELDS, MapPoint
 from routing.outputs.values import Value
 from routing.outputs.ways import own_samples
 from routing.outputs.ways_fields import SAMPLE_FIELDS

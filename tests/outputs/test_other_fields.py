@@ -5,12 +5,10 @@ from routing.outputs.other_fields import (
     CHECK_FIELDS,
     COST_FIELDS,
     NOT_MADE,
-    POINT_FIELDS,
     SECTION_FIELDS,
     WATER_FIELDS,
     CheckRow,
     CostRow,
-    MapPoint,
     SectionRow,
 )
 
@@ -66,22 +64,4 @@ def test_section_sample(plan):
         "crown_m": 98.0,
         "ceiling_m": 107.0,
         "crown_pressure_pa": 113_686.0,
-    }
-
-
-def test_point_without_a_level(plan):
-    found = row(POINT_FIELDS, plan, MapPoint("intake", "intake", 1.0, 2.0, None))
-    assert found == {
-        "kind": "intake",
-        "name": "intake",
-        "route": None,
-        "chainage_m": None,
-        "level_m": None,
-        "x": 1.0,
-        "y": 2.0,
-        "proven": None,
-        "length_m": None,
-        "lift_m": None,
-        "used": None,
-        "note": None,
     }
