@@ -158,7 +158,8 @@ class Bench:
         scene, start = self.scene, path.start_length_m
         first, last = ((int(row), int(col)) for row, col in path.cells[[0, -1]])
         straight = start + scene.grid.straight_m(first, last)
-        whole = best.proven_outside or self.scene.terrain.window.whole
+        more = scene.outlets is not None and scene.outlets.more_outside  # they may be lower than any that was read
+        whole = (best.proven_outside and not more) or scene.terrain.window.whole
         where = "on the whole DEM" if whole else "inside the part of the DEM that was read"
         ask = self.site.search
         rule = "bilinear ground" if ask.ground_rule == "bilinear" else "cells"

@@ -93,7 +93,9 @@ class _Survey:
 
     @property
     def proven(self) -> bool:
-        return all(offer.proven for offer in self.offers)
+        outlets = self.scene.outlets
+        more = outlets is not None and outlets.more_outside  # outlets not read may be lower than any that was
+        return not more and all(offer.proven for offer in self.offers)
 
 
 def _search(site: Site, scene: Scene, report: Reporter) -> _Survey:
