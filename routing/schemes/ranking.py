@@ -7,6 +7,8 @@ from dataclasses import replace
 
 from routing.records import GRADES, Check, Scheme
 
+# Checks that are broken whenever nothing flows, whatever the reason.
+_CONSEQUENCES = frozenset({"discharge", "breaking"})
 _UNFIT = GRADES.index("unfit")
 
 
@@ -22,6 +24,9 @@ def _shortage(scheme: Scheme) -> tuple[float, float]:
     """Return how far an unfit scheme is from working: whether more than money is missing, and the largest share."""
     broken = [check for check in scheme.verdict.checks if check.grade == "unfit"]
     head = scheme.appraisal.barometric_head_m
+    if not scheme.appraisal.largest.runs:
+        # Where nothing flows all of the discharge is missing, to every scheme alike: what keeps it from flowing counts.
+        broken = [check for check in broken if check.name not in _CONSEQUENCES] or broken
     worst = max((_missing(check, head) for check in broken), default=0.0)
     return float(any(check.name != "budget" for check in broken)), worst
 

@@ -90,3 +90,14 @@ def test_one_more_pipe_never_carries_less_nor_leaves_less_reserve(required, coun
         assert more.appraisal.reserve_left_m >= fewer.appraisal.reserve_left_m
     if fewer.verdict.grade != "unfit":
         assert more.verdict.grade != "unfit"
+
+
+def test_where_nothing_flows_the_least_missing_suction_is_first(job_of, changed, scheme_of):
+    def lacking(metres, cost):
+        matter = changed(
+            job_of().matter(0.1), duty={"reserve_left_m": -metres, "discharge_m3s": 0.0}, largest={"discharge_m3s": 0.0}
+        )
+        return scheme_of(replace(matter, cost=replace(matter.cost, total=cost), required_m3s=0.2, budget=None))
+
+    ranked = rank([lacking(2.96, 1000.0), lacking(0.65, 9000.0)], asked=True)
+    assert [scheme.cost.total for scheme in ranked] == [9000.0, 1000.0]
