@@ -51,13 +51,11 @@ class Ways:
 
 
 def _limitation(bench: Bench, lead: Candidate) -> Limitation:
-    """Return what the other ways must keep to: the lead's duty; where it breaks the limit, a ceiling raised to it."""
-    asked = lead.appraisal.duty_m3s
-    discharge = asked if asked is not None else 0.0
+    """Return what the other ways must keep to: what the lead runs at; where that breaks the limit, a raised ceiling."""
+    run = lead.appraisal.duty
+    discharge = 0.0 if lead.appraisal.duty_m3s is None else run.discharge_m3s
     limitation = bench.limit_at(lead.pipe, discharge * _EASED)
-    missing = -min(lead.appraisal.reserve_left_m, 0.0)
-    if lead.appraisal.largest.energy_discharge_m3s < discharge:
-        limitation = replace(limitation, longest_m=np.inf)
+    missing = -min(run.reserve_left_m, 0.0)
     return limitation.raised(missing * 1.001 + 0.01) if missing > 0.0 else limitation
 
 

@@ -79,6 +79,16 @@ def test_where_nothing_is_feasible_the_least_bad_ways_are_shown(make_job, ground
         assert scheme.appraisal.reserve_left_m < 0.0
 
 
+@pytest.mark.parametrize("duty", [0.02, 5.0])
+def test_the_least_bad_way_has_a_crossing_also_where_the_fall_is_too_small(make_job, ground, duty):
+    plan = make_job(
+        gapped(ground, {30: 107.6}, top=112.0), ends=ENDS, demand={"discharge_m3s": duty, "most_pipes": 1}
+    ).plan()
+    assert not plan.feasible
+    assert plan.crossings
+    assert plan.schemes[0].route.crossing == "C1"
+
+
 def test_no_discharge_asked_every_crossing_tells_what_it_carries(make_job, ground, hand):
     plan = make_job(gapped(ground, {30: 102.0}), ends=ENDS).plan()
     by_name = {scheme.route.crossing: scheme for scheme in plan.schemes}
