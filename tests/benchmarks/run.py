@@ -12,16 +12,16 @@ import shutil
 import subprocess
 import sys
 import tempfile
-import time
 import tracemalloc
-from dataclasses import dataclass
 from pathlib import Path
 
 import numpy as np
 import shapely
 import skimage
 from grounds import bank, hills
+from rows import Row, best_of
 from skimage.graph import MCP_Geometric
+from ways import crossings
 
 from routing.hydraulics import discharge_under, energy_discharge_m3s, pe_pipe, suction_ceiling, water_at
 from routing.records import GridWindow, Levels, Limits, Losses, Terrain, TerrainFacts
@@ -31,25 +31,6 @@ from routing.terrain.clipping import blocked_by, lay_over
 
 SIZE = 1000
 ROOT = Path(__file__).resolve().parents[2]
-
-
-@dataclass(frozen=True)
-class Row:
-    what: str
-    measured: float
-    bar: str
-    met: bool
-    note: str
-
-
-def best_of(work, times=5):
-    """Shortest of several runs, in seconds."""
-    found = []
-    for _ in range(times):
-        start = time.perf_counter()
-        work()
-        found.append(time.perf_counter() - start)
-    return min(found)
 
 
 def ours(ground, neighbours, rule, level=np.inf, gradient=0.0, source=(SIZE // 2, SIZE // 2)):
@@ -66,9 +47,13 @@ def against_skimage():
     ours(ground[:50, :50], 8, "cells", source=(1, 1))  # load the kernel first
     eight, sixteen = ours(ground, 8, "cells"), ours(ground, 16, "cells")
     note = f"scikit-image {skimage.__version__} MCP_Geometric.find_costs took {theirs:.2f} s"
-    yield Row("8 neighbours, `cells`: times as fast as scikit-image", theirs / eight, "at least 4", theirs / eight >= 4, note)
+    yield Row(
+        "8 neighbours, `cells`: times as fast as scikit-image", theirs / eight, "at least 4", theirs / eight >= 4, note
+    )
     share = sixteen / theirs
-    yield Row("16 neighbours: share of scikit-image's time with 8", share, "at most 0.45", share <= 0.45, f"{sixteen:.3f} s")
+    yield Row(
+        "16 neighbours: share of scikit-image's time with 8", share, "at most 0.45", share <= 0.45, f"{sixteen:.3f} s"
+    )
     low = tuple(int(v) for v in np.unravel_index(np.argmin(ground), ground.shape))
     for level in (25.0, 35.0):
         cells = ours(ground, 16, "cells", level, 1e-3, low)
@@ -99,9 +84,7 @@ def flow_of(pipe, levels, *, along=True):
 
     return Flow(
         limit_at=limit_at,
-        carried_by=lambda path: discharge_under(
-            pipe, *rest, path.at_length_m, path.at_level_m + offset, path.length_m
-        ),
+        carried_by=lambda path: discharge_under(pipe, *rest, path.at_length_m, path.at_level_m + offset, path.length_m),
         carried_at_length=lambda length: energy_discharge_m3s(pipe, length, *rest),
     )
 
@@ -170,8 +153,20 @@ def start_up():
         bare = best_of(lambda: run_command("-c", "import rasterio, geopandas, numba, scipy.optimize"), 5)
         warm = best_of(plan, 5)
     helped = best_of(lambda: run_command("-m", "routing.commands", "--help"), 5)
-    yield Row("`overcrest plan` on the demo over the bare imports", warm / bare, "at most 3", warm / bare <= 3, f"{warm:.2f} s")
-    yield Row("`overcrest --help` over the bare imports", helped / bare, "at most 0.3", helped / bare <= 0.3, f"{helped:.2f} s")
+    yield Row(
+        "`overcrest plan` on the demo over the bare imports",
+        warm / bare,
+        "at most 3",
+        warm / bare <= 3,
+        f"{warm:.2f} s",
+    )
+    yield Row(
+        "`overcrest --help` over the bare imports",
+        helped / bare,
+        "at most 0.3",
+        helped / bare <= 0.3,
+        f"{helped:.2f} s",
+    )
 
 
 def first_call():
@@ -182,7 +177,11 @@ def first_call():
         )
         environment = os.environ | {"NUMBA_CACHE_DIR": folder}
         times = [
-            float(subprocess.run([sys.executable, "-c", code], check=True, capture_output=True, env=environment, cwd=ROOT).stdout)
+            float(
+                subprocess.run(
+                    [sys.executable, "-c", code], check=True, capture_output=True, env=environment, cwd=ROOT
+                ).stdout
+            )
             for _ in range(2)
         ]
     yield Row("first search of a process, compiled by an earlier one, s", times[1], "none", True, "loading")
@@ -208,10 +207,12 @@ def main():
     parser.add_argument("--write", type=Path, help="file to write the table to")
     ask = parser.parse_args()
     rows = []
-    for part in (against_skimage, memory, bars, largest_searches, first_call, start_up):
+    for part in (against_skimage, memory, bars, largest_searches, crossings, first_call, start_up):
         for row in part():
             rows.append(row)
-            print(f"{row.what}: {row.measured:.2f} ({row.bar}) {'ok' if row.met else 'NOT MET'}; {row.note}", flush=True)
+            print(
+                f"{row.what}: {row.measured:.2f} ({row.bar}) {'ok' if row.met else 'NOT MET'}; {row.note}", flush=True
+            )
     if ask.write:
         machine = f"{platform.machine()}, {os.cpu_count()} cores, Python {platform.python_version()}"
         ask.write.write_text(f"{HEAD}{table(rows)}\n\nMachine: {machine}, numpy {np.__version__}.\n", encoding="utf-8")
