@@ -14,7 +14,7 @@ from routing.site.models import SECTIONS
 
 PAGE = (Path(__file__).resolve().parents[2] / "docs" / "howto" / "site-file.md").read_text(encoding="utf-8")
 TOML = re.findall(r"^```toml\n(.*?)^```", PAGE, flags=re.DOTALL | re.MULTILINE)
-LEAST, POINTS, PIPES, PRICES, ZONES = TOML
+LEAST, POINTS, ANYWHERE, LINE, SHORE, PIPES, PRICES, ZONES = TOML
 
 
 def test_the_least_file_loads(make):
@@ -28,6 +28,18 @@ def test_the_parts_fit_into_it(make):
     site = load_site(path)
     assert len(site.pipes) == 3
     assert site.prices.date == "2026-01-31"
+
+
+def test_the_ends_left_open_fit_into_it(make):
+    intake = LEAST[LEAST.index("[intake]") : LEAST.index("[outlet]")]
+    outlet = LEAST[LEAST.index("[outlet]") : LEAST.index("[[pipes]]")]
+    site = load_site(make((intake, SHORE + "\n"), (outlet, ANYWHERE + "\n"), text=LEAST))
+    assert (site.intake.kind, site.intake.underwater_length_m) == ("shore", 15.0)
+    assert (site.outlet.kind, site.outlet.beyond_toe_m) == ("anywhere", 50.0)
+    path = make((outlet, LINE + "\n"), text=LEAST)
+    (path.parent / "stream.gpkg").touch()
+    site = load_site(path)
+    assert (site.outlet.kind, site.outlet.at.file) == ("line", path.parent.resolve() / "stream.gpkg")
 
 
 def test_the_zones_fit_into_it(make):
