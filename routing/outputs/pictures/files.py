@@ -14,6 +14,9 @@ from routing.outputs.pictures.texts import shown
 from routing.outputs.pictures.words import picture_text, picture_title, pictures_text
 from routing.records import Plan
 
+#: Of nine: the higher ones take long and gain little.
+_COMPRESSION = 4
+
 
 def picture_files(plan: Plan, wanted: Wanted = "overview") -> Iterator[tuple[str, bytes]]:
     """Draw the pictures of a plan.
@@ -60,7 +63,8 @@ def picture(subject: Subject) -> tuple[bytes, bytes]:
         png, svg = io.BytesIO(), io.BytesIO()
         # tEXt chunks are Latin-1, so what is outside it is written as an escape.
         told = {name: _latin(value) for name, value in (("Title", title), ("Description", text))}
-        figure.savefig(png, format="png", dpi=style.DPI, metadata={"Software": "overcrest", **told})
+        quick = {"compress_level": _COMPRESSION}
+        figure.savefig(png, format="png", metadata={"Software": "overcrest", **told}, pil_kwargs=quick)
         figure.savefig(svg, format="svg", dpi=style.SVG_IMAGE_DPI, metadata={"Date": None, "Title": title})
     return png.getvalue(), _described(svg.getvalue(), text)
 

@@ -13,6 +13,8 @@ from routing.records import BoolArray, FloatArray, Terrain
 MARGIN = 0.14
 #: A frame is at least so many cells high: less shows no ground.
 LEAST_CELLS = 12
+#: Cells looked at along the side of a block.
+_LOOKED_AT = 4
 
 
 @dataclass(frozen=True, slots=True)
@@ -122,6 +124,8 @@ def _kept_inside(middle: float, half: float, low: float, high: float) -> float:
 def cut_of(terrain: Terrain, water: BoolArray, frame: Frame, most: int) -> Cut | None:
     """Return the elevations in a frame as means of square blocks of cells, at most ``most`` blocks either way.
 
+    Of blocks more than four cells wide a lattice of cells is taken.
+
     ``None`` where the frame holds no cell.
     """
     a, _, c, _, e, f = terrain.transform
@@ -131,12 +135,16 @@ def cut_of(terrain: Terrain, water: BoolArray, frame: Frame, most: int) -> Cut |
     if first_row >= last_row or first_col >= last_col:
         return None
     k = max(1, -(-max(last_row - first_row, last_col - first_col) // most))
-    part = np.s_[first_row:last_row, first_col:last_col]
+    # Of large blocks only so many cells are looked at, so that a huge window takes neither memory nor time.
+    every = -(-k // _LOOKED_AT)
+    side = -(-k // every)
+    k = side * every
+    part = np.s_[first_row + every // 2 : last_row : every, first_col + every // 2 : last_col : every]
     valid = terrain.valid[part]
-    total = _blocks(np.where(valid, terrain.elevation_m[part], 0.0), k)
-    count = _blocks(valid.astype(np.float64), k)
+    total = _blocks(np.where(valid, terrain.elevation_m[part], 0.0), side)
+    count = _blocks(valid.astype(np.float64), side)
     level = np.divide(total, count, out=np.full_like(total, np.nan), where=count > 0)
-    dry = _blocks(water[part].astype(np.float64), k) == 0
+    dry = _blocks(water[part].astype(np.float64), side) == 0
     block_rows, block_cols = level.shape
     middle_row = np.minimum(first_row + k * np.arange(block_rows) + k // 2, rows - 1)
     north, west = f + e * first_row, c + a * first_col

@@ -66,7 +66,8 @@ def draw_ground(axes: Axes, subject: Subject, frame: Frame) -> tuple[list[Entry]
 def _relief(axes: Axes, cut: Cut) -> None:
     bright = shade(cut)
     grey = 0.58 + 0.42 * np.nan_to_num(bright, nan=0.0) ** 0.9
-    image = np.stack([grey, grey, 0.985 * grey, np.isfinite(bright)], axis=-1)
+    # Whole numbers: the drawing library takes three times as long over fractions.
+    image = np.round(255.0 * np.stack([grey, grey, 0.985 * grey, np.isfinite(bright)], axis=-1)).astype(np.uint8)
     axes.imshow(image, extent=cut.extent, origin="upper", interpolation="bilinear", aspect="auto", zorder=1)
 
 

@@ -36,6 +36,7 @@ _SETTINGS: dict[Any, Any] = {
     "svg.image_inline": True,
     "text.parse_math": False,  # a dollar sign in a title is a dollar sign
     "text.usetex": False,
+    "text.hinting": "none",
     "axes.unicode_minus": True,
     "path.simplify": True,
     "figure.autolayout": False,

@@ -23,12 +23,24 @@ class Ruler:
 
     def __init__(self, renderer: RendererAgg) -> None:
         self._renderer = renderer
+        self._known: dict[tuple[str, float, bool], float] = {}
 
     def width_in(self, text: str, size: float, *, bold: bool = False) -> float:
-        """Return the width of a line of text in inches."""
-        font = FontProperties(size=size, weight="bold" if bold else "normal", family=["DejaVu Sans"])
+        """Return the width of a line of text in inches, a little more where letters move together (kerning)."""
+        return sum(self._letter_in(letter, size, bold=bold) for letter in text)
+
+    def _letter_in(self, letter: str, size: float, *, bold: bool) -> float:
+        key = (letter, size, bold)
+        if key not in self._known:
+            font = FontProperties(size=size, weight="bold" if bold else "normal", family=["DejaVu Sans"])
+            # Between two others, a letter's own bearings count, and blanks too.
+            line, less = (self._measured(text, font) for text in (f"n{letter}n", "nn"))
+            self._known[key] = (line - less) / self._renderer.dpi
+        return self._known[key]
+
+    def _measured(self, text: str, font: FontProperties) -> float:
         measured = self._renderer.get_text_width_height_descent(text, font, ismath=False)  # type: ignore[no-untyped-call]
-        return float(measured[0] / self._renderer.dpi)
+        return float(measured[0])
 
     def shortened(self, text: str, size: float, room_in: float, *, bold: bool = False) -> str:
         """Return the text, cut with an ellipsis where it is longer than the room."""

@@ -1,9 +1,10 @@
+import tracemalloc
 from dataclasses import replace
 
 import numpy as np
 import pytest
 
-from routing.outputs.pictures.framing import cut_of, frame_of
+from routing.outputs.pictures.framing import Frame, cut_of, frame_of
 from routing.outputs.pictures.subject import overview
 
 
@@ -90,3 +91,24 @@ def test_a_frame_off_the_dem_has_no_cut(plan):
     frame = frame_of(overview(plan), 2.0)
     away = replace(frame, west=frame.west + 1e5, east=frame.east + 1e5)
     assert cut_of(plan.terrain, plan.water_body.cells, away, 300) is None
+
+
+def test_a_huge_window_is_looked_at_in_steps(plan):
+    """A plane 3,000 by 4,000 cells wide: thinned, it is the same plane, and little memory is used."""
+    rows, cols = np.indices((3000, 4000), dtype=np.float32)
+    level = (0.01 * cols + 0.02 * rows).astype(np.float64)
+    a, _, c, _, e, f = plan.terrain.transform
+    ones = np.ones(3000)
+    terrain = replace(
+        plan.terrain, elevation_m=level, valid=np.ones(level.shape, bool), step_x_m=5 * ones, step_y_m=5 * ones
+    )
+    frame = Frame(c, c + 4000 * a, f + 3000 * e, f, 1.0, 1.0)
+    tracemalloc.start()
+    cut = cut_of(terrain, np.zeros(level.shape, bool), frame, 260)
+    peak = tracemalloc.get_traced_memory()[1]
+    tracemalloc.stop()
+    assert max(cut.level_m.shape) <= 260
+    assert peak < 8 * level.size / 2
+    col, row = (cut.x - c) / a - 0.5, (cut.y - f) / e - 0.5
+    expected = 0.01 * col[None, :] + 0.02 * row[:, None]
+    np.testing.assert_allclose(cut.level_m[:-1, :-1], expected[:-1, :-1], atol=0.03)
