@@ -79,16 +79,14 @@ def _water_rows(outlook: Outlook) -> list[tuple[str, str]]:
     source = (
         "given as a polygon" if body.source == "polygon" else f"flooded from the intake at {fixed(body.level_m, 2)} m"
     )
-    outlet = "outlet level" if outlook.site.outlet.kind == "point" else "an outlet"
+    where = "" if outlook.site.outlet.kind == "point" else " at the place that the lowest crest leads to"
+    fall = fixed(setting.lowest.fall_m, 2)
     return [
         ("the DEM shows", _SHOWN[outlook.terrain.facts.water_shown]),
         ("flat water found", "none at the intake" if flat is None else f"at {fixed(flat, 2)} m"),
         ("present level", f"{fixed(setting.present.water_m, 2)} m"),
         ("lowest level", f"{fixed(setting.lowest.water_m, 2)} m"),
-        (
-            outlet,
-            f"{fixed(setting.lowest.receiving_m, 2)} m, fall {fixed(setting.lowest.fall_m, 2)} m at the lowest level",
-        ),
+        ("outlet level", f"{fixed(setting.lowest.receiving_m, 2)} m{where}, fall {fall} m at the lowest level"),
         ("water body", f"{area}{cut}; {source}{voids}"),
         ("spills at", spill),
     ]
