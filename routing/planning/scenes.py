@@ -183,7 +183,6 @@ def _look_at(site: Site, dem: Dem, ends: Ends, window: GridWindow, tick: Callabl
         proven=not body.touches_open_border and (window.whole or (to_outlet is not None and to_outlet.proven)),
         warnings=(),
         zones=zones,
-        intakes=intake_places(site, ground, intake),
         outlets=outlets,
     )
 
@@ -256,4 +255,6 @@ def survey(site: Site, dem: Dem, ends: Ends, window: GridWindow, reporter: Repor
         check_outlet(site, scene.terrain, scene.grid, scene.body, scene.crest, (scene.intake_cell, scene.outlet_cell))
     for end, at in (("intake", (ends.intake, scene.intake_cell)), ("outlet", (ends.outlet, scene.outlet_cell))):
         check_free(site, scene.terrain, scene.zones, end, at)
+    ground = Ground(scene.terrain, scene.grid, scene.body, scene.zones, scene.present_m)
+    scene = replace(scene, intakes=intake_places(site, ground, scene.intake_cell))
     return replace(scene, warnings=_warnings(site, scene))

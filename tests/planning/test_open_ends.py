@@ -171,3 +171,44 @@ def test_a_measured_bed_is_the_best_of_all_deep_cells(make_job, duty):
     single = [with_points(best, cell, (6, 30)) for cell in deep]
     allowed = 2e-3 if duty is None else 1e-6
     assert best.figure == pytest.approx(min(one.figure for one in single), rel=allowed)
+
+
+def test_the_second_best_is_the_best_of_all_far_places(make_job):
+    """At least a tenth of the route's length, and five cells, from the first."""
+    ground = rough(np.random.default_rng(7), top=104.0)
+    asked = {"discharge_m3s": 0.10, "most_pipes": 1}
+    job = make_job(ground, ends=((6, 8), (6, 30)), outlet=ANYWHERE, demand=asked)
+    plan, alone = job.plan(), offer(job)
+    first = plan.schemes[0].route
+    far = max(0.1 * first.length_m, 5 * STEP)
+    lengths = {}
+    for cell in pairs(alone.scene.outlets.cells):
+        if np.hypot(*(np.array(cell) - first.cells[-1])) * STEP >= far * (1 - 1e-6):
+            single = with_points(alone, (6, 8), cell)
+            lengths |= {one.route.length_m: one.appraisal.discharge_m3s for one in single.candidates}
+    least = min(lengths)
+    (note,) = plan.choice_notes
+    assert least > first.length_m
+    assert f"Second best, {far:.0f} m or more away" in note
+    assert f"{least:.0f} m, carries {lengths[least] * 1e3:.1f} l/s)." in note.partition("Second best")[2]
+
+
+def test_a_lake_larger_than_the_first_window_is_seen_whole_before_its_depth_is_judged(make_job):
+    """The point lies in shallow water; the deep part is 150 cells away."""
+    rows, cols = 40, 400
+    ground = np.full((rows, cols), 110.0)
+    ground[5:35, 40:340] = 98.9
+    ground[5:35, 50:60] = 95.0
+    ground[5:35, 345:] = 90.0 - 0.01 * np.arange(55)
+    ground[5:35, 340:345] = 103.0
+    job = make_job(
+        ground,
+        ends=((20, 330), (20, 360)),
+        terrain={"water_shown": "bed"},
+        intake={"kind": "shore", "mouth_level_m": None},
+        outlet=POINT,
+    )
+    found = offer(job)
+    columns = set(found.scene.intakes.cells[:, 1] + found.scene.terrain.window.col_start)
+    assert columns <= set(range(50, 60))
+    assert found.candidates[0].route.underwater_length_m > 270 * STEP
