@@ -27,7 +27,9 @@ SMALL, TEXT, LABEL, TITLE = 6.3, 7.0, 7.2, 12.5
 
 #: Everything is set anew for each picture, so that nobody's own settings, nor chance, reach it.
 _SETTINGS: dict[Any, Any] = {
-    "font.family": ["DejaVu Sans"],  # comes with matplotlib: the same letters everywhere
+    # The first comes with matplotlib: the same letters everywhere. The rest is for who opens an SVG without it.
+    "font.family": ["sans-serif"],
+    "font.sans-serif": ["DejaVu Sans", "Verdana", "Arial", "Helvetica"],
     "font.size": TEXT,
     "axes.linewidth": 0.6,
     "hatch.linewidth": 0.5,
