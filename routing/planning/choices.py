@@ -105,7 +105,8 @@ def _figures(scheme: Scheme) -> str:
     pipes = f"{scheme.count} x " if scheme.count > 1 else ""
     cost = f", {scheme.cost.total:,.0f} {scheme.cost.currency}".rstrip() if scheme.cost.lines else ""
     carried = f"carries {scheme.total_discharge_m3s * 1e3:.1f} l/s"
-    return f"{pipes}{scheme.pipe.name}, {scheme.route.length_m:.0f} m, {carried}{cost}"
+    grade = f"{scheme.verdict.grade_of_made} by the checks made"
+    return f"{pipes}{scheme.pipe.name}, {scheme.route.length_m:.0f} m, {carried}{cost}, {grade}"
 
 
 def _at(bench: Bench, what: str, route: Route) -> str:
