@@ -49,6 +49,7 @@ temperature_c = 10.0           # warmest water to expect: it boils soonest
 # y = {y}
 # REQUIRED where the DEM shows the water's surface: level of the top of the intake mouth
 # mouth_level_m = 98.5
+# To let it lie anywhere along the shore of that water, see intake.kind in the reference.
 
 [outlet]
 # REQUIRED: a point beyond the dam or ridge, lower than the lowest level
@@ -57,6 +58,7 @@ temperature_c = 10.0           # warmest water to expect: it boils soonest
 height_above_ground_m = 0.3    # of the pipe's axis; or give its level:
 # level_m = 95.0
 # tailwater_level_m = 94.5       # left out: the outlet discharges freely
+# To let it lie along a stream, in a field, or anywhere low that drains, see outlet.kind in the reference.
 
 [losses]
 # Local losses, as K in K V2/2g.
