@@ -88,8 +88,10 @@ def _beyond_the_toe(site: Site, ground: Ground, low: BoolArray, drained: BoolArr
         far = drained & (distance >= least)
         if not far.any():
             return none_far(site, ground.terrain, np.where(drained, distance, -1.0))
-    note = _told_anywhere(site, low, drained, far)
-    return _places(site, ground, far, note, more_outside=not ground.terrain.window.whole)
+    note, whole = _told_anywhere(site, low, drained, far), ground.terrain.window.whole
+    if not whole:
+        note += " The border of what was read of the DEM counts as its edge."
+    return _places(site, ground, far, note, more_outside=not whole)
 
 
 def _places(site: Site, ground: Ground, found: BoolArray, note: str, *, more_outside: bool) -> OutletPlaces:

@@ -248,6 +248,17 @@ def test_shapes_that_cannot_serve(make_job, ground, look_at, draw, kind, shape, 
     assert problem.line == job.line_of("height_above" if what == "low enough" else 'file = "shapes')
 
 
+def test_low_cells_that_a_polygon_of_the_water_leaves_out_are_no_places(make_job, ground, look_at, draw):
+    """The drawn shore ends at column 15, the lake of the DEM at column 22: nothing parts the cells between from it."""
+    water = draw(shapely.box(2.2, 6.2, 15.0, 33.8), name="water.gpkg")
+    shape = {"kind": "polygon", "file": draw(shapely.box(5.1, 10.1, 60.9, 20.9))}
+    z = basin(ground)
+    job = make_job(z, terrain={"water_shown": "bed"}, water={"polygon_file": water}, outlet=NO_PLACE | GROUND | shape)
+    found = cells_of(look_at(job).outlets)
+    assert min(col for _, col in found) > 30
+    assert (15, 50) in found
+
+
 # ---------------------------------------------------------------- shores
 
 
@@ -434,5 +445,6 @@ def test_a_window_that_cannot_hold_all_places_proves_nothing(make_job, ground):
     job = make_job(z, outlet=ANYWHERE, search={"largest_window_cells": 10_000})
     plan = job.plan()
     assert not plan.terrain.window.whole
+    assert any("border of what was read" in text for text in plan.assumptions)
     assert not plan.schemes[0].route.proof.whole_dem
     assert any("proven only inside" in text for text in plan.warnings)
