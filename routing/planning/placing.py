@@ -16,6 +16,7 @@ from routing.terrain.shapes import read_shapes
 if TYPE_CHECKING:
     from shapely.geometry.base import BaseGeometry
 
+_SMALL_DEM_CELLS = 100_000
 _LEAST_MARGIN_CELLS = 48
 
 
@@ -106,8 +107,8 @@ def shapes_inside(dem: Dem, terrain: Terrain, shapes: BaseGeometry) -> bool:
 def first_window(site: Site, dem: Dem, ends: Ends) -> GridWindow:
     """Return the window to begin with: both ends with a margin of half their distance, or less where that is too much.
 
-    Lines and polygons for the outlet are taken whole where they fit. With an outlet anywhere it is the whole DEM, or as
-    much as may be read round the intake.
+    A small DEM is read whole. Lines and polygons for the outlet are taken whole where they fit. With an outlet anywhere
+    it is the whole DEM, or as much as may be read round the intake.
 
     Raises
     ------
@@ -115,6 +116,8 @@ def first_window(site: Site, dem: Dem, ends: Ends) -> GridWindow:
         If even the least margin makes a window larger than the user's limit.
     """
     most = site.search.largest_window_cells
+    if dem.whole.rows * dem.whole.cols <= min(most, _SMALL_DEM_CELLS):
+        return dem.whole  # read in a few milliseconds: growing a window would take longer
     if site.outlet.kind == "anywhere":
         if dem.whole.rows * dem.whole.cols <= most:
             return dem.whole

@@ -312,17 +312,9 @@ def free_ratio(grid: Grid) -> float:
     float
         At least 1. For level square cells 1.0824, 1.0275 and 1.0131 with 8, 16 and 32 neighbours.
     """
-    worst = 1.0
-    for step_x, step_y in {(float(x), float(y)) for x, y in zip(grid.step_x_m, grid.step_y_m, strict=True)}:
-        vectors = np.column_stack([grid.moves.dcol * step_x, grid.moves.drow * step_y])
-        worst = max(worst, _worst_ratio(vectors))
-    return worst
-
-
-def _worst_ratio(vectors: FloatArray) -> float:
-    """1 / cos(half the largest angle between neighbouring vectors)."""
-    angle = np.sort(np.arctan2(vectors[:, 1], vectors[:, 0]))
-    gaps = np.diff(np.append(angle, angle[0] + 2.0 * np.pi))
+    shape = np.unique(grid.step_x_m / grid.step_y_m)[:, None]  # of the cells; their size does not matter
+    angle = np.sort(np.arctan2(grid.moves.drow[None, :] * 1.0, grid.moves.dcol[None, :] * shape), axis=1)
+    gaps = np.diff(angle, axis=1, append=angle[:, :1] + 2.0 * np.pi)
     return float(1.0 / np.cos(0.5 * gaps.max()))
 
 

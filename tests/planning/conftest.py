@@ -12,6 +12,7 @@ import rasterio
 from rasterio import Affine
 
 import routing
+from routing.planning import placing
 
 #: 10 m cells in UTM; the north-west corner of cell (0, 0).
 WEST, NORTH, CELL = 500000.0, 5000000.0, 10.0
@@ -127,6 +128,18 @@ def write_site(path, sections, pipes):
         lines += ["[[pipes]]", *(f"{key} = {_toml(value)}" for key, value in pipe.items()), ""]
     path.write_text("\n".join(lines), encoding="utf-8")
     return path
+
+
+@pytest.fixture(autouse=True)
+def windows_of_small_dems(monkeypatch, request):
+    """Made DEMs are small: let windows grow on them all the same, but where a test asks for what users see."""
+    if "small_dems_whole" not in request.fixturenames:
+        monkeypatch.setattr(placing, "_SMALL_DEM_CELLS", 0)
+
+
+@pytest.fixture
+def small_dems_whole():
+    """Leave the reading of small DEMs as it is."""
 
 
 @pytest.fixture

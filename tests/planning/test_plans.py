@@ -143,3 +143,9 @@ def test_a_window_grows_where_a_shorter_way_may_run_outside(make_job):
     assert kept.lowest_crest.proven
     assert kept.schemes[0].route.crest_m == pytest.approx(101.0)
     assert any("proven only inside the 97 x 117 cells" in text for text in kept.warnings)
+
+
+def test_a_small_dem_is_read_whole_at_once(make_job, ground, small_dems_whole):
+    values = np.vstack([ground.reservoir(), np.full((200, 80), 90.0)])  # taller than a first window would be
+    plan = make_job(values).plan()
+    assert plan.terrain.window.whole
