@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import gc
 import sys
 import traceback
 from collections.abc import Sequence
@@ -13,6 +14,9 @@ from routing.commands.group import COMMANDS, overcrest
 from routing.commands.options import EXIT_DONE
 from routing.commands.streams import emit_json, library_warnings, never_fail_on_characters, note, silence
 from routing.errors import InputError, Interrupted, OvercrestError, Problem
+
+#: New objects between two collections (Python's own: 700).
+_COLLECT_AFTER = 50_000
 
 
 def main(argv: Sequence[str] | None = None, *, program: str = "overcrest") -> int:
@@ -30,6 +34,8 @@ def main(argv: Sequence[str] | None = None, *, program: str = "overcrest") -> in
     int
         Exit code: 0 done, 2 bad input or usage, 3 no feasible route, 130 interrupted, 1 a fault of ours.
     """
+    # Start-up makes many objects that live to the end: looking through them for garbage again and again is in vain.
+    gc.set_threshold(_COLLECT_AFTER, 20, 20)
     call = Call(tuple(sys.argv[1:] if argv is None else argv), program=program)
     never_fail_on_characters()
     with listening_for_stops(call.stop), library_warnings(shown=call.asks("-v", "--verbose")):

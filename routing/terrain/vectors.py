@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import json
 from dataclasses import dataclass
 from pathlib import Path
 from typing import Any
@@ -80,7 +81,10 @@ def read_layer(ask: LayerAsk) -> tuple[list[BaseGeometry], CRS]:
     TerrainError
         If the file or layer cannot be read, or has no CRS.
     """
-    # Imported here: pyogrio may load geopandas and pandas, and most sites need no vector file.
+    plain = _plain_geojson(ask)
+    if plain is not None:
+        return plain, CRS.from_user_input("OGC:CRS84")
+    # Imported here: pyogrio may load geopandas and pandas, and most sites need no such file.
     import pyogrio  # noqa: PLC0415
     import pyogrio.raw  # noqa: PLC0415
     from pyogrio.errors import DataLayerError, DataSourceError  # noqa: PLC0415
@@ -104,6 +108,24 @@ def read_layer(ask: LayerAsk) -> tuple[list[BaseGeometry], CRS]:
         ) from error
     geometries = [one for one in shapely.from_wkb(shapes) if one is not None and not one.is_empty]
     return geometries, _own_crs(ask, meta)
+
+
+def _plain_geojson(ask: LayerAsk) -> list[BaseGeometry] | None:
+    """Read a GeoJSON file that is all of RFC 7946, by shapely; ``None`` leaves any other file to GDAL.
+
+    Shapely reads it in a millisecond, while what reads every format takes a third of a second to load.
+    """
+    if ask.layer is not None or ask.file.suffix.lower() not in {".geojson", ".json"}:
+        return None
+    try:
+        document = json.loads(ask.file.read_bytes())
+        if document.get("type") != "FeatureCollection" or "crs" in document:
+            return None
+        shapes = [one.get("geometry") for one in document["features"]]
+        found = shapely.from_geojson([json.dumps(one) for one in shapes if one is not None])
+    except (OSError, ValueError, AttributeError, TypeError, KeyError, shapely.errors.GEOSException):
+        return None
+    return [one for one in shapely.force_2d(found) if not one.is_empty]
 
 
 def _layer_name(ask: LayerAsk, names: list[str]) -> str:

@@ -7,6 +7,7 @@ from pyproj import CRS
 
 from routing.errors import TerrainError
 from routing.terrain import LayerAsk, read_geometries
+from routing.terrain.vectors import read_layer
 
 UTM = CRS.from_epsg(32615)
 
@@ -90,3 +91,32 @@ def test_coordinates_that_the_crs_does_not_reach(tmp_path):
     path.write_text(json.dumps({"type": "FeatureCollection", "features": [point]}))
     with pytest.raises(TerrainError, match="no coordinates"):
         read_geometries(LayerAsk(path), UTM)
+
+
+def test_plain_geojson_is_read_as_gdal_reads_it(tmp_path):
+    """The quick way for RFC 7946 files gives what pyogrio gives (source: GDAL), null and empty features left out."""
+    import pyogrio
+    import shapely
+
+    features = [
+        {"type": "Point", "coordinates": [3.0, 55.5, 12.0]},
+        None,
+        {
+            "type": "MultiPolygon",
+            "coordinates": [[[[0, 0], [2, 0], [2, 2], [0, 0]]], [[[5, 5], [6, 5], [6, 6], [5, 5]]]],
+        },
+        {"type": "GeometryCollection", "geometries": []},
+    ]
+    collection = {
+        "type": "FeatureCollection",
+        "features": [{"type": "Feature", "properties": {}, "geometry": one} for one in features],
+    }
+    file = tmp_path / "plain.geojson"
+    file.write_text(json.dumps(collection), encoding="utf-8")
+    found, crs = read_layer(LayerAsk(file))
+    _, _, expected, _ = pyogrio.raw.read(file, columns=[], force_2d=True)
+    same = [one for one in shapely.from_wkb(expected) if one is not None and not one.is_empty]
+    assert [one.wkt for one in found] == [one.wkt for one in same]
+    assert crs.is_geographic
+    file.write_text(json.dumps(collection | {"crs": {"type": "name", "properties": {"name": "EPSG:32631"}}}))
+    assert read_layer(LayerAsk(file))[1].to_epsg() == 32631
