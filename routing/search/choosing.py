@@ -22,8 +22,8 @@ from routing.search.widest import bound_by_cells, compact, spread
 _NO_FLOW = 1e-6
 # A bracket this narrow is closed sooner by probes than by cells.
 _COARSE = 0.01
-# Each round brings the highest places much closer; what is then left is within rounding.
-_TOUCHES = 6
+# Each round brings the highest places some ten times closer, in metres; what is then left is within rounding.
+_TOUCHES = 20
 _HAIR_M = 1e-9
 
 
@@ -36,7 +36,9 @@ class Flow:
     limit_at
         The limitation of a discharge (0: still water).
     carried_by
-        The largest discharge that a path allows, by its edges.
+        The largest discharge that a path allows, by the places of its edges that it holds. Between those of the rule
+        along edges ground can stand a little higher (centimetres on large cells), so what the search lets through may
+        be less, by some 1e-4 of it; `largest_discharge` looks at the very highest place.
     carried_at_length
         The largest discharge that the fall drives through a length in m, suction left aside.
     """
@@ -205,7 +207,8 @@ def largest_discharge(job: Job, flow: Flow, *, tolerance: float = 1e-3) -> Found
     -------
     Found
         ``low`` is what the path carries by the search's own rules, ``high`` what no path can exceed. Where even
-        still water finds no path, ``path`` is ``None`` and both are 0.
+        still water finds no path, ``path`` is ``None`` and both are 0. At ``low`` itself rounding may hide the path
+        from a further search; a billionth less finds it.
     """
     bracket = _first_bracket(job, flow)
     nothing = 0.0 if bracket.shortest is None else _NO_FLOW * flow.carried_at_length(bracket.shortest.length_m)

@@ -10,6 +10,13 @@ import numpy as np
 import pytest
 
 import routing
+from routing.planning.benches import Bench
+from routing.planning.placing import first_window, place_ends
+from routing.planning.reports import Reporter
+from routing.planning.scenes import survey
+from routing.planning.settings import resolve
+from routing.search import largest_discharge, shortest_path
+from routing.terrain import open_dem
 
 DATA = Path(__file__).parent.parent / "data"
 CASES = json.loads((DATA / "cases.json").read_text())["cases"]
@@ -161,3 +168,18 @@ def test_one_job_in_utm_and_in_web_mercator(tmp_path):
     assert two.route.length_m == pytest.approx(one.route.length_m, rel=0.005)
     assert two.appraisal.discharge_m3s == pytest.approx(one.appraisal.discharge_m3s, rel=0.005)
     assert two.route.line.length > 1.4 * two.route.length_m
+
+
+@pytest.mark.parametrize("case", ["R01c", "R04a", "R05a"])
+def test_what_the_search_says_is_carried_is_found_again_a_billionth_lower(case, tmp_path):
+    """Where suction governs: the samples of a path tell up to some 1e-4 more than the search lets through."""
+    site = site_of(BY_ID[case], tmp_path)
+    with open_dem(site.terrain, site.lines, site.file) as dem:
+        ends = place_ends(site, dem)
+        scene = survey(site, dem, ends, first_window(site, dem, ends), Reporter())
+    bench = Bench(site, scene, resolve(site, scene), lambda _: None)
+    flow = bench.flow(site.pipes[0])
+    best = largest_discharge(bench.job, flow, tolerance=site.search.tolerance)
+    assert best.low < 0.95 * flow.carried_at_length(best.path.length_m)
+    assert shortest_path(bench.job, flow.limit_at(best.low * (1.0 - 1e-9))).path is not None
+    assert best.low * (1.0 - 1e-12) <= flow.carried_by(best.path) <= best.low * (1.0 + 5e-4)

@@ -167,3 +167,19 @@ def test_a_longer_way_outside_the_window_is_never_ruled_out_by_mistake():
     grid = prepare_grid(wide, 1.0, 1.0)
     middle = Job(grid, (50, 10), (50, 30), border_band(grid, (True, True, True, True)))
     assert shortest_path(middle, Limitation()).proven_outside
+
+
+@pytest.mark.parametrize("seed", range(8))
+def test_a_billionth_less_than_the_largest_discharge_still_finds_a_path(seed):
+    """On rough ground the highest place under a falling ceiling lies between the samples of an edge."""
+    ground = np.random.default_rng(seed).uniform(0.0, 5.0, (12, 14))
+    ground[0, 0] = ground[-1, -1] = 0.0
+    by_edges = flow("bilinear", start=5.0)
+    by_places = replace(by_edges, limit_at=lambda q: replace(by_edges.limit_at(q), along=True))
+    asked = job(ground, neighbours=16)
+    found = largest_discharge(asked, by_places)
+    assert found.low > 0.0
+    again = shortest_path(asked, by_places.limit_at(found.low * (1.0 - 1e-9))).path
+    assert again is not None
+    assert by_places.carried_by(found.path) >= found.low * (1.0 - 1e-9)
+    assert by_places.carried_by(found.path) <= found.low * (1.0 + 1e-2)
