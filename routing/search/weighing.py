@@ -8,13 +8,13 @@ appraised beside the exact answer.
 from __future__ import annotations
 
 import numpy as np
-from numpy.typing import ArrayLike
+from numpy.typing import ArrayLike, NDArray
 
 from routing.records import FloatArray
 from routing.search.ends import Job
-from routing.search.grid import weighted_grid
+from routing.search.grid import Grid, weighted_grid
 from routing.search.paths import PathEdges, path_edges
-from routing.search.reaching import Limitation, search_grid
+from routing.search.reaching import Limitation, Reach, search_grid
 
 _HOPELESS_M = 30.0
 
@@ -25,7 +25,7 @@ def weighted_path(job: Job, cell_weight: ArrayLike) -> tuple[PathEdges, float] |
     Parameters
     ----------
     job
-        The search problem.
+        The search problem; with open ends, length already behind a source counts once, and every goal alike.
     cell_weight : (rows, cols) array
         What a metre counts for in each cell, above 0.
 
@@ -40,11 +40,30 @@ def weighted_path(job: Job, cell_weight: ArrayLike) -> tuple[PathEdges, float] |
         If the weights cannot be used.
     """
     grid, scale = weighted_grid(job.grid, cell_weight)
-    found = search_grid(grid, [job.source], Limitation(goal=job.goal), tick=job.tick)
-    cost = float(found.length_m[job.goal])
-    if not np.isfinite(cost):
+    found = _weighted_search(job, grid, scale)
+    goals = job.goals
+    costs = found.length_m[goals[:, 0], goals[:, 1]]
+    best = int(np.argmin(costs))
+    if not np.isfinite(costs[best]):
         return None
-    return path_edges(job.grid, found.path_to(*job.goal), Limitation(along=True)), cost * scale
+    cells = found.path_to(int(goals[best][0]), int(goals[best][1]))
+    start = _start_length_m(job, cells[0])
+    return path_edges(job.grid, cells, Limitation(along=True), start), float(costs[best]) * scale
+
+
+def _weighted_search(job: Job, grid: Grid, scale: float) -> Reach:
+    ends = job.open_ends
+    if ends is None:
+        return search_grid(grid, [job.source], Limitation(goal=job.goal), tick=job.tick)
+    return search_grid(grid, ends.sources, Limitation(), start_length_m=ends.start_length_m / scale, tick=job.tick)
+
+
+def _start_length_m(job: Job, cell: NDArray[np.intp]) -> float:
+    """Return the length already behind a source."""
+    if job.open_ends is None:
+        return 0.0
+    here = np.all(job.open_ends.sources == cell, axis=1)
+    return float(job.open_ends.start_length_m[here].min())
 
 
 def height_penalty(level_m: FloatArray, limit_m: FloatArray | float, weight_per_m: float) -> FloatArray:

@@ -53,3 +53,24 @@ def test_on_ground_below_the_limit_all_weights_find_the_same(make_job, ground):
     assert len(plan.samples) == 1
     assert plan.samples[0].same_as == plan.schemes[0].route.name
     np.testing.assert_array_equal(plan.samples[0].route.cells, plan.schemes[0].route.cells)
+
+
+def test_samples_begin_and_end_where_the_ends_were_left_open(make_job, ground):
+    """The shore lies 11 cells before the point in the water; a stated length of pipe lies before it."""
+    values = ridge_with_gap(ground, top=112.0, gap=102.0)
+    values[:, -1] = 85.0  # the valley drains to the edge of the DEM
+    shore = {"kind": "shore", "underwater_length_m": 35.0, "mouth_level_m": None}
+    anywhere = {"kind": "anywhere", "x": None, "y": None, "level_m": None, "height_above_ground_m": 0.3}
+    plan = make_job(
+        values, ends=ENDS, intake=shore, outlet=anywhere, demand={"discharge_m3s": 0.08, "most_pipes": 1}
+    ).plan()
+    assert plan.samples
+    lake = plan.water_body.cells
+    for sample in plan.samples:
+        (row, col), goal = sample.route.cells[0], tuple(sample.route.cells[-1])
+        assert lake[row, col]
+        assert not lake[row - 1 : row + 2, col - 1 : col + 2].all()
+        assert not lake[goal]
+        assert sample.route.underwater_length_m == 35.0
+        assert sample.route.outlet_m == pytest.approx(values[goal] + 0.3, abs=1e-3)
+    assert plan.samples[0].route.length_m <= plan.schemes[0].route.length_m * (1 + 1e-9)

@@ -1,5 +1,6 @@
 """Weighted searches: against scikit-image and scipy, the law of refraction, and a weight of one."""
 
+from dataclasses import replace
 from itertools import pairwise
 
 import numpy as np
@@ -13,6 +14,7 @@ from routing.errors import InputError
 from routing.search import (
     Job,
     Limitation,
+    OpenEnds,
     border_band,
     height_penalty,
     prepare_grid,
@@ -125,3 +127,23 @@ def test_what_cannot_be_used_is_refused():
             weighted_grid(grid, weight)
     with pytest.raises(InputError, match="no ceiling"):
         search_grid(weighted_grid(grid, np.ones((4, 4)))[0], [(0, 0)], Limitation(5.0))
+
+
+@pytest.mark.parametrize("seed", range(6))
+def test_open_ends_give_the_best_of_separate_searches(seed):
+    rng = np.random.default_rng(seed)
+    ground, weight = rng.uniform(0, 3, (9, 11)), rng.uniform(0.5, 5.0, (9, 11))
+    sources, goals = np.array([[0, 0], [4, 1], [8, 0]]), np.array([[0, 10], [7, 9]])
+    before = rng.uniform(0.0, 6.0, 3)
+    ends = OpenEnds(sources, before, goals, np.array([0.0, 2.0]))
+    found, cost = weighted_path(replace(job(ground), open_ends=ends), weight)
+    single = {
+        (tuple(source), tuple(goal)): start
+        + weighted_path(job(ground, source=tuple(map(int, source)), goal=tuple(map(int, goal))), weight)[1]
+        for source, start in zip(sources, before, strict=True)
+        for goal in goals
+    }
+    best = min(single, key=single.get)
+    assert cost == pytest.approx(single[best], rel=1e-9)
+    assert (tuple(found.cells[0]), tuple(found.cells[-1])) == best
+    assert found.start_length_m == before[[tuple(source) for source in sources].index(best[0])]
