@@ -1,15 +1,21 @@
-"""Other ways over: a route over each of the best crossings, each searched again at its own chainage."""
+"""Other ways over: a route over each of the best crossings, each searched again at its own chainage.
+
+The crossings of the routes that are known already are always among them.
+"""
 
 from __future__ import annotations
 
+from collections.abc import Iterable
 from dataclasses import dataclass, replace
 
 import numpy as np
+from numpy.typing import NDArray
 
 from routing.planning.benches import Bench
 from routing.planning.candidates import Candidate
-from routing.records import Crossing
+from routing.records import Crossing, FloatArray, Route
 from routing.search import (
+    Divide,
     Job,
     Limitation,
     Pass,
@@ -19,6 +25,7 @@ from routing.search import (
     find_divide,
     join_paths,
     path_edges,
+    same_pass,
     search_back,
     search_job,
     search_on,
@@ -36,17 +43,52 @@ _EASED = 0.995
 
 @dataclass(frozen=True, slots=True)
 class Way:
-    """A crossing, and the path over it if one was found."""
+    """A crossing, and the path over it if one was looked for and found: none is where a known route takes it."""
 
     crossing: Crossing
     path: PathEdges | None
 
 
 @dataclass(frozen=True, slots=True)
+class Places:
+    """The divide, the lengths over it, and the crossings of their own there, the shortest first."""
+
+    divide: Divide
+    total_m: FloatArray
+    passes: tuple[Pass, ...]
+
+    def of_route(self, route: Route) -> Pass:
+        """Return the crossing that a route takes; a new one where it takes none of these."""
+        cell = self._step_over(route.cells)
+        place = Pass(cell, float(self.divide.level_m[cell]), route.proof.graph_length_m)
+        return same_pass(self.divide.cells, self.total_m, self.divide.level_m, self.passes, place) or place
+
+    def _step_over(self, cells: NDArray[np.intp]) -> tuple[int, int]:
+        """Return the cell of the divide that is nearest to where a path leaves the water's side for good."""
+        last = np.flatnonzero(self.divide.water_side[cells[:, 0], cells[:, 1]])[-1]
+        line = np.argwhere(self.divide.cells)
+        row, col = line[int(np.argmin(np.sum((line - cells[last]) ** 2, axis=1)))]
+        return int(row), int(col)
+
+    def with_routes(self, routes: Iterable[Route]) -> tuple[Places, dict[str, Pass]]:
+        """Return the places with the crossings of known routes among them, and the crossing of each route by name."""
+        places, taken = self, {}
+        for route in routes:
+            if route.name not in taken:
+                place = places.of_route(route)
+                taken[route.name] = place
+                if place not in places.passes:
+                    passes = sorted((*places.passes, place), key=lambda one: one.length_m)
+                    places = replace(places, passes=tuple(passes))
+        return places, taken
+
+
+@dataclass(frozen=True, slots=True)
 class Ways:
-    """The crossings found, best first, and why there are not more."""
+    """The crossings found, best first, the names of those that known routes take, and why there are not more."""
 
     ways: tuple[Way, ...]
+    taken: dict[str, str]
     note: str
 
 
@@ -70,11 +112,11 @@ def _over(job: Job, found: Reach, place: Pass, limitation: Limitation) -> PathEd
     return None if cells is None else path_edges(job.grid, cells, limitation, start)
 
 
-def _crossing(bench: Bench, place: Pass, name: str, path: PathEdges | None) -> Crossing:
+def _crossing(bench: Bench, place: Pass, name: str, *, used: bool) -> Crossing:
     x, y = xy_of(bench.scene.terrain, place.cell[0], place.cell[1])
     lift = place.level_m - bench.setting.lowest.water_m
-    note = "a route over it was appraised" if path is not None else "no way on from it keeps to the limits"
-    return Crossing(name, float(x), float(y), place.level_m, place.length_m, lift, path is not None, note)
+    note = "a route over it was appraised" if used else "no way on from it keeps to the limits"
+    return Crossing(name, float(x), float(y), place.level_m, place.length_m, lift, used, note)
 
 
 def _why(found: int, tried: int) -> str:
@@ -94,12 +136,12 @@ def _why(found: int, tried: int) -> str:
     )
 
 
-def other_ways(bench: Bench, lead: Candidate) -> Ways:
-    """Find up to three ways over different crossings, for the pipe and duty of a leading candidate.
+def other_ways(bench: Bench, lead: Candidate, known: Iterable[Candidate]) -> Ways:
+    """Find ways over different crossings: those of the known candidates, and more up to three.
 
-    The first crossing is that of the shortest way, the lead's own. Lengths from the intake under the ceiling, and to
-    the outlet, rank the places along the divide; from each that is a crossing of its own the search goes on at the
-    chainage that it is reached at.
+    Lengths from the intake under the ceiling, and to the outlet, for the pipe and duty of a leading candidate, rank the
+    places along the divide; from each that is a crossing of its own, and that no candidate takes, the search goes on at
+    the chainage that it is reached at.
     """
     job, grid = bench.job, bench.scene.grid
     limitation = _limitation(bench, lead)
@@ -114,10 +156,17 @@ def other_ways(bench: Bench, lead: Candidate) -> Ways:
     back = search_back(far, replace(limitation, ceiling_gradient=0.0, along=False))
     total = there.length_m + back.length_m
     total[total > limitation.longest_m] = np.inf
+    found = Places(divide, total, tuple(distinct_passes(divide.cells, total, divide.level_m, _MOST_PASSES)))
+    places, taken = found.with_routes(one.route for one in known)
+    wanted, named = WANTED - len(set(taken.values())), dict[Pass, str]()
     ways: list[Way] = []
-    for place in distinct_passes(divide.cells, total, divide.level_m, _MOST_PASSES):
-        path = _over(far, there, place, limitation)
-        ways.append(Way(_crossing(bench, place, f"C{len(ways) + 1}", path), path))
-        if sum(way.path is not None for way in ways) == WANTED:
-            break
-    return Ways(tuple(ways), _why(sum(way.path is not None for way in ways), len(ways)))
+    for place in places.passes:
+        used = place in taken.values()
+        if not used and wanted <= 0:
+            continue
+        path = None if used else _over(far, there, place, limitation)
+        wanted -= path is not None
+        named[place] = f"C{len(ways) + 1}"
+        ways.append(Way(_crossing(bench, place, named[place], used=used or path is not None), path))
+    names = {route: named[place] for route, place in taken.items()}
+    return Ways(tuple(ways), names, _why(sum(way.crossing.used for way in ways), len(ways)))

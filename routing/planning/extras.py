@@ -113,15 +113,14 @@ def find_extras(
         The extras, and the given candidates with the name of the crossing that each takes.
     """
     known = {one.pipe.name: one.route.proof for one in candidates}
-    ways = other_ways(bench, lead)
-    named = tuple(_near(bench, one, ways) for one in candidates)
-    taken = {one.route.crossing for one in named}
-    fresh: list[Candidate] = []
+    sturdy = _sturdier(bench, candidates, known)
+    ways = other_ways(bench, lead, (*candidates, *sturdy))
+    named = tuple(_named((one,), ways.taken[one.route.name])[0] for one in candidates)
+    fresh = [_named((one,), ways.taken[one.route.name])[0] for one in sturdy]
     for way in ways.ways:
-        if way.path is not None and way.crossing.name not in taken:
+        if way.path is not None:
             served = _served(bench, way.path, known) or [_at_lead(bench, lead, way.path, known)]
             fresh += _named(served, way.crossing.name)
-    fresh += _sturdier(bench, named, known)
     samples = []
     for sampled in sampled_paths(bench, lead, cost_factor):
         same = bench.names.get(sampled.path.cells.tobytes(), "")

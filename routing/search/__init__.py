@@ -7,7 +7,7 @@ siphon; `lowest_crest` floods the bilinear ground.
 from routing.search.choosing import Flow, Found, largest_discharge, least_raise, shortest_path
 from routing.search.compiling import cache_folder, kernels_ready
 from routing.search.crests import Crest, crest_levels, lowest_crest
-from routing.search.divides import Divide, Pass, distinct_passes, find_divide, join_paths
+from routing.search.divides import Divide, Pass, distinct_passes, find_divide, join_paths, same_pass
 from routing.search.ends import Job, OpenEnds, search_back, search_job, search_on
 from routing.search.gaps import moves_over_gaps
 from routing.search.grid import Grid, free_ratio, prepare_grid, with_barred
@@ -46,6 +46,7 @@ __all__ = [
     "path_edges",
     "prepare_grid",
     "reach",
+    "same_pass",
     "search_back",
     "search_grid",
     "search_job",

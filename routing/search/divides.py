@@ -9,6 +9,7 @@ one.
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -127,15 +128,51 @@ def distinct_passes(divide: BoolArray, length_m: FloatArray, level_m: FloatArray
     lengths, levels = length_m[cells[:, 0], cells[:, 1]], level_m[cells[:, 0], cells[:, 1]]
     if not np.isfinite(lengths).any():
         return []
-    pairs = _neighbours(divide, cells)
-    kept: list[int] = []
-    for i in _least_of_their_own(lengths, levels, pairs):
-        same = next((k for k, other in enumerate(kept) if _one_crossing(lengths, levels, pairs, i, other)), None)
-        if same is None and len(kept) < most:
-            kept.append(i)
-        elif same and levels[i] < levels[kept[same]] and lengths[i] < MORE_LENGTH * lengths[kept[same]]:
-            kept[same] = i  # hardly longer and lower; the first one stays, it is the shortest of all
+    kept = _of_their_own(lengths, levels, _neighbours(divide, cells), most)
     return [Pass((int(cells[i][0]), int(cells[i][1])), float(levels[i]), float(lengths[i])) for i in kept]
+
+
+def same_pass(
+    divide: BoolArray, length_m: FloatArray, level_m: FloatArray, passes: Sequence[Pass], place: Pass
+) -> Pass | None:
+    """Return the crossing, the shortest of those given, that a place on the divide is one with; ``None`` without one.
+
+    Parameters
+    ----------
+    divide, length_m, level_m
+        As for `distinct_passes`.
+    passes
+        Crossings found there.
+    place
+        A cell of the divide, with the length of a way over it that is known to be allowed.
+    """
+    cells = np.argwhere(divide)
+    lengths, levels = length_m[cells[:, 0], cells[:, 1]], level_m[cells[:, 0], cells[:, 1]]
+    number = {(int(row), int(col)): i for i, (row, col) in enumerate(cells)}
+    here = number[place.cell]
+    lengths[here] = min(lengths[here], place.length_m)
+    pairs = _neighbours(divide, cells)
+    return next((one for one in passes if _one_crossing(lengths, levels, pairs, here, number[one.cell])), None)
+
+
+def _of_their_own(lengths: FloatArray, levels: FloatArray, pairs: NDArray[np.intp], most: int) -> list[int]:
+    """Return the places of which no two are one crossing, the shortest first.
+
+    A hardly longer place that is lower stands for its crossing in place of the shortest there; only the first one
+    stays, since it is the shortest of all.
+    """
+    kept: list[int] = []
+    shortest: list[float] = []  # of each crossing, so that steps of a few per cent do not add up
+    for i in _least_of_their_own(lengths, levels, pairs):
+        same = [k for k, other in enumerate(kept) if _one_crossing(lengths, levels, pairs, i, other)]
+        if not same and len(kept) < most:
+            kept.append(i)
+            shortest.append(lengths[i])
+        elif len(same) == 1 and same[0] > 0:
+            k = same[0]
+            if levels[i] < levels[kept[k]] and lengths[i] < MORE_LENGTH * shortest[k]:
+                kept[k] = i
+    return sorted(kept, key=lambda i: lengths[i])
 
 
 def _neighbours(divide: BoolArray, cells: NDArray[np.intp]) -> NDArray[np.intp]:

@@ -98,3 +98,17 @@ def test_no_discharge_asked_every_crossing_tells_what_it_carries(make_job, groun
         fall = hand.energy_m3s(9.0, route.length_m)
         assert scheme.appraisal.discharge_m3s <= fall * 1.001
         assert scheme.appraisal.discharge_m3s > 0.3 * fall
+
+
+def test_the_crossing_of_the_best_route_is_listed_however_many_are_shorter(make_job, ground):
+    """Of five gaps the farthest carries most: it is a crossing, and so are the two shortest."""
+    gaps = {73: 106.6, 58: 106.0, 43: 105.3, 28: 104.6, 13: 102.0}
+    plan = make_job(gapped(ground, gaps, top=109.0, rows=150), ends=((75, 8), (75, 52))).plan()
+    best = plan.schemes[0].route
+    assert 13 <= crest_row(best) < 28
+    rows = {crossing.name: (5000000.0 - crossing.y) / 10.0 for crossing in plan.crossings}
+    assert 12 < rows[best.crossing] < 19
+    assert len(rows) == 3
+    for scheme in plan.schemes:
+        assert abs(crest_row(scheme.route) - rows[scheme.route.crossing]) < 8
+    assert {scheme.route.crossing for scheme in plan.schemes} == set(rows)

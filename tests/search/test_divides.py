@@ -5,7 +5,16 @@ import pytest
 from scipy.ndimage import gaussian_filter
 from skimage.segmentation import watershed
 
-from routing.search import Limitation, distinct_passes, find_divide, join_paths, prepare_grid, search_grid
+from routing.search import (
+    Limitation,
+    Pass,
+    distinct_passes,
+    find_divide,
+    join_paths,
+    prepare_grid,
+    same_pass,
+    search_grid,
+)
 from routing.search.dividing import spread_marks
 
 
@@ -125,3 +134,42 @@ def test_paths_are_joined_where_they_do_not_meet_again():
     one, other = np.array([[0, 0], [0, 1]]), np.array([[0, 1], [1, 1]])
     assert join_paths(one, other).tolist() == [[0, 0], [0, 1], [1, 1]]
     assert join_paths(one, np.array([[0, 1], [0, 0]])) is None
+
+
+def wandering(rng, rows):
+    """A divide that wanders from row to row, with lengths and levels that wander too; some rows are closed."""
+    col = np.clip(4 + np.cumsum(rng.integers(-1, 2, rows)), 1, 7)
+    divide = np.zeros((rows, 9), bool)
+    divide[np.arange(rows), col] = True
+    along = np.abs(100.0 + np.cumsum(rng.normal(0.0, 2.0, rows))) + 50.0
+    along[rng.random(rows) < 0.1] = np.inf
+    level = np.cumsum(rng.normal(0.0, 0.25, rows))
+    return divide, np.where(divide, along[:, None], np.inf), np.where(divide, level[:, None], 0.0)
+
+
+@pytest.mark.parametrize("seed", range(40))
+def test_no_two_crossings_are_one_and_the_shortest_comes_first(seed):
+    divide, length, level = wandering(np.random.default_rng(seed), 80)
+    passes = distinct_passes(divide, length, level)
+    lengths = [one.length_m for one in passes]
+    assert lengths == sorted(lengths)
+    assert lengths[0] == length.min()
+    for k, one in enumerate(passes):
+        assert same_pass(divide, length, level, passes[:k], one) is None
+        assert same_pass(divide, length, level, passes[k:], one) == one
+
+
+def test_the_crossing_of_a_place_is_the_one_that_a_way_along_the_divide_joins_it_with():
+    divide, length, level = np.zeros((60, 3), bool), np.full((60, 3), np.inf), np.zeros((60, 3))
+    divide[:, 1] = True
+    length[:, 1] = 100.0 + np.abs(np.arange(60) - 10)
+    level[:, 1] = np.where(np.abs(np.arange(60) - 45) < 5, 1.0, 3.0)
+    passes = distinct_passes(divide, length, level)
+    assert [one.cell[0] for one in passes] == [10, 41]
+    beside = Pass((13, 1), 3.0, 104.0)
+    assert same_pass(divide, length, level, passes, beside) == passes[0]
+    assert same_pass(divide, length, level, passes[1:], beside) is None
+    length[54:], level[50:53] = np.inf, 4.0  # closed by what was asked of the others, yet a way is known
+    assert same_pass(divide, length, level, passes, Pass((58, 1), 3.0, 200.0)) is None
+    level[50:53] = 3.4
+    assert same_pass(divide, length, level, passes, Pass((58, 1), 3.0, 200.0)) == passes[0]
