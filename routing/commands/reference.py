@@ -53,8 +53,16 @@ def _section(name: str, parent: click.Context) -> str:
     )
 
 
+def _value(option: click.Option) -> str:
+    if option.metavar:
+        return option.metavar
+    if isinstance(option.type, click.Choice):
+        return ", ".join(f"`{choice}`" for choice in option.type.choices)
+    return "PATH"
+
+
 def _row(option: click.Option) -> str:
     names = ", ".join(f"`{name}`" for name in option.opts)
-    value = "" if option.is_flag else f" {option.metavar or 'PATH'}"
+    value = "" if option.is_flag else f" {_value(option)}"
     default = f" Default: `{option.default}`." if option.show_default else ""
     return f"| {names}{value} | {option.help}{default} |"

@@ -15,3 +15,4 @@ def test_the_page_has_every_command_and_option():
     page = commands_page()
     assert all(f"\n## {name}\n" in page for name in COMMANDS)
     assert all(option in page for option in ("`--out` PATH", "`--top` N", "`--schema`", "`--json`", "`--replace`"))
+    assert "| `--pictures` `overview`, `all`, `none` |" in page
