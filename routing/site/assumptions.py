@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Iterator, Sequence
 
 from routing.records import Pipe
 from routing.site.fields import number_text
@@ -112,13 +112,13 @@ def _prices(model: SiteModel) -> Iterator[str]:
     for name in ("laying_per_m", "fixed_each"):
         without = [str(number) for number, pipe in enumerate(model.pipes, start=1) if getattr(pipe, name) is None]
         if without:
-            yield f"pipes {', '.join(without)}: {name} is not given and counts as 0."
+            yield f"{_numbered('pipe', without)}: {name} is not given and counts as 0."
 
 
 def _zones(model: SiteModel) -> Iterator[str]:
-    barred = [f"zones {number}" for number, zone in enumerate(model.zones, start=1) if zone.kind == "barred"]
+    barred = [str(number) for number, zone in enumerate(model.zones, start=1) if zone.kind == "barred"]
     if barred:
-        yield f"{', '.join(barred)}: barred as drawn, with no distance kept from the edge (zones.file)."
+        yield f"{_numbered('zone', barred)}: barred as drawn, with no distance kept from the edge (zones.file)."
     if any(zone.kind == "cost" for zone in model.zones):
         if not any(pipe.laying_per_m for pipe in model.pipes):
             yield "No pipe has a price of laying, so cost zones change nothing (pipes.laying_per_m)."
@@ -128,12 +128,17 @@ def _zones(model: SiteModel) -> Iterator[str]:
 
 def _pipes(model: SiteModel, pipes: tuple[Pipe, ...]) -> Iterator[str]:
     """Say what was taken for the pipes, each thing once with the pipes that it holds for."""
-    numbers: dict[str, list[int]] = {}
+    numbers: dict[str, list[str]] = {}
     for number, (asked, pipe) in enumerate(zip(model.pipes, pipes, strict=True), start=1):
         for sentence in _pipe(asked, pipe):
-            numbers.setdefault(sentence, []).append(number)
+            numbers.setdefault(sentence, []).append(str(number))
     for sentence, holds in numbers.items():
-        yield f"pipes {', '.join(map(str, holds))}: {sentence}"
+        yield f"{_numbered('pipe', holds)}: {sentence}"
+
+
+def _numbered(noun: str, numbers: Sequence[str]) -> str:
+    """Return tables of the site file by their numbers: ``pipe 2``, ``pipes 1, 3``."""
+    return f"{noun}{'s' if len(numbers) > 1 else ''} {', '.join(numbers)}"
 
 
 def _pipe(asked: PipeModel, pipe: Pipe) -> Iterator[str]:

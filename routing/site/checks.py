@@ -55,7 +55,9 @@ def _check_file(key: str, draft: Draft, ledger: Ledger) -> None:
         ledger.add(key, "this is a folder, not a file", found=found, allowed=allowed, remedy="name the file in it")
     elif not path.is_file():
         remedy = _missing_file_remedy(path, draft.folder)
-        ledger.add(key, "there is no such file", found=f"{found} (sought as {path})", allowed=allowed, remedy=remedy)
+        ledger.add(
+            key, "there is no such file", found=f"{found} (sought as {path.absolute()})", allowed=allowed, remedy=remedy
+        )
 
 
 def _missing_file_remedy(path: Path, folder: Path) -> str:

@@ -52,11 +52,11 @@ def test_a_key_left_out_is_told(make, key, edit):
 def test_pipes_share_a_sentence(make):
     site = load_site(make())
     assert "pipes 1, 3: Out-of-roundness is taken as 3 % (ovality_pct)." in site.assumptions
-    assert "pipes 2: Out-of-roundness is taken as 1 % (ovality_pct)." in site.assumptions
-    assert "pipes 1: The material is taken to be PE100 (material)." in site.assumptions
-    assert any(s.startswith("pipes 3: No modulus") for s in site.assumptions)
-    assert any(s.startswith("pipes 3: The thinnest wall") for s in site.assumptions)
-    assert any(s.startswith("pipes 3: Poisson") for s in site.assumptions)
+    assert "pipe 2: Out-of-roundness is taken as 1 % (ovality_pct)." in site.assumptions
+    assert "pipe 1: The material is taken to be PE100 (material)." in site.assumptions
+    assert any(s.startswith("pipe 3: No modulus") for s in site.assumptions)
+    assert any(s.startswith("pipe 3: The thinnest wall") for s in site.assumptions)
+    assert any(s.startswith("pipe 3: Poisson") for s in site.assumptions)
 
 
 def test_prices(make):

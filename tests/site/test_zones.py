@@ -60,7 +60,7 @@ def test_zones_are_read_with_key_and_line(make):
     assert all(lines[zone.line - 1] == 'file = "dem.tif"' for zone in site.zones)
     assert bank.line < bog.line
     assert bank.file == path.parent.resolve() / "dem.tif"
-    assert "zones 1: barred as drawn, with no distance kept from the edge (zones.file)." in site.assumptions
+    assert "zone 1: barred as drawn, with no distance kept from the edge (zones.file)." in site.assumptions
     assert "No pipe has a price of laying, so cost zones change nothing (pipes.laying_per_m)." in site.assumptions
 
 
