@@ -10,6 +10,8 @@ from routing.records import TerrainFacts
 
 #: How the reader of DEMs says that a DEM does not say something.
 _UNKNOWN = {"", "unknown", "not stated"}
+#: Column at which the comments behind the values stand.
+_COMMENT_AT = 31
 
 _TEXT = """\
 # Site file for a siphon over a dam or ridge. Text after '#' is a comment.
@@ -27,11 +29,12 @@ file = {file}
 {datum}
 # datum_offset_m = 0.0           # added to every elevation of the DEM
 # vertical_error_90_m = 0.3      # error that 90 % of the elevations keep; unknown: no verdict better than caution
-{surface}           # "ground", "canopy" (trees and roofs are in it) or "unknown"
-{water_shown}      # what the DEM shows of the water: its flat "surface" or its "bed"
+{surface}# "ground", "canopy" (trees and roofs are in it) or "unknown"
+{water_shown}# what the DEM shows of the water: its flat "surface" or its "bed"
 
 [air]
-# Air pressure at the site limits the lift. Give an altitude or a measured pressure, unless levels count from the sea.
+# Air pressure at the site limits the lift.
+{air}
 # altitude_m = 250.0
 # pressure_pa = 98000.0
 barometric_low_pa = 3000.0     # taken off for bad weather
@@ -137,8 +140,9 @@ def starter(facts: TerrainFacts, *, dem_path: str | os.PathLike[str], folder: st
         size=f"{facts.cols} x {facts.rows} cells, x {_span(facts, 0)}, y {_span(facts, 1)}",
         unit=_unit_line(facts),
         datum=_datum_line(facts),
-        surface=f'surface = "{facts.surface}"',
-        water_shown=f'water_shown = "{facts.water_shown}"',
+        air=_air_line(facts),
+        surface=f'surface = "{facts.surface}"'.ljust(_COMMENT_AT),
+        water_shown=f'water_shown = "{facts.water_shown}"'.ljust(_COMMENT_AT),
         x=x,
         y=y,
     )
@@ -188,10 +192,21 @@ def _unit_line(facts: TerrainFacts) -> str:
             '# vertical_unit = "m"'
         )
     unit, source = _plain(facts.vertical_unit), _plain(facts.vertical_unit_source)
-    return f'# vertical_unit = "{unit}"          # as the DEM says' + (f" ({source})" if source else "")
+    return (
+        f'# vertical_unit = "{unit}"'.ljust(_COMMENT_AT + 2) + "# as the DEM says" + (f" ({source})" if source else "")
+    )
 
 
 def _datum_line(facts: TerrainFacts) -> str:
     if facts.vertical_datum not in _UNKNOWN:
         return f"# vertical_datum = {_quoted(facts.vertical_datum)}  # as the DEM says"
-    return '# vertical_datum = "..."       # the DEM does not name one'
+    return '# vertical_datum = "..."'.ljust(_COMMENT_AT + 2) + "# the DEM does not name one"
+
+
+def _air_line(facts: TerrainFacts) -> str:
+    if facts.vertical_datum in _UNKNOWN:
+        return (
+            "# REQUIRED, since the DEM names no datum: altitude or measured pressure of the site; or, if levels count\n"
+            "# from the sea, the name of their datum above (vertical_datum)"
+        )
+    return "# Give an altitude or a measured pressure, unless levels count from the sea."

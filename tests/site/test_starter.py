@@ -118,7 +118,22 @@ def test_an_unknown_unit_is_marked_as_required():
     facts = dataclasses.replace(FACTS, vertical_unit="unknown", vertical_unit_source="stated by neither")
     text = starter(facts, dem_path="dem.tif", folder=".")
     assert "# REQUIRED: the DEM does not say in what unit" in text
-    assert '# vertical_unit = "m"          # as the DEM says (the band' in starter(FACTS, dem_path="d", folder=".")
+    assert '# vertical_unit = "m"            # as the DEM says (the band' in starter(FACTS, dem_path="d", folder=".")
+
+
+def test_an_altitude_is_marked_as_required_where_the_dem_names_no_datum():
+    unnamed = dataclasses.replace(FACTS, vertical_datum="not stated")
+    named = dataclasses.replace(FACTS, vertical_datum="EGM2008 height")
+    assert "# REQUIRED, since the DEM names no datum: altitude" in starter(unnamed, dem_path="d", folder=".")
+    assert "names no datum" not in starter(named, dem_path="d", folder=".")
+
+
+def test_comments_stand_below_each_other_once_the_signs_are_taken_away():
+    unnamed = dataclasses.replace(FACTS, vertical_datum="not stated")
+    lines = starter(unnamed, dem_path="d", folder=".").replace("\n# ", "\n").splitlines()
+    for name in ("vertical_unit", "vertical_datum", "surface", "water_shown", "datum_offset_m", "temperature_c"):
+        (line,) = [line for line in lines if line.startswith(f"{name} = ")]
+        assert line.index(" # ") == 30, line
 
 
 def test_a_datum_that_the_dem_names_is_shown():
