@@ -109,7 +109,7 @@ _COST: tuple[SchemeField, ...] = (
         "currency",
         "number",
         2,
-        "Cost of the scheme: the sum of its lines in `costs.csv`.",
+        "Cost of the scheme: the sum of its lines in `costs.csv`; 0 where nothing has a price.",
         lambda _, s: s.cost.total,
         Shown("cost", style="three figures"),
     ),

@@ -31,10 +31,16 @@ def scheme_table(plan: Plan, top: int = MOST_ROWS) -> Table:
 def table_of(plan: Plan, schemes: Sequence[Scheme]) -> Table:
     """Return a table of some schemes of a plan, in the order given.
 
-    The crossing that a route takes stands behind its name, where any is known.
+    The crossing that a route takes stands behind its name, where any is known. The cost is left out where nothing has
+    a price.
     """
     table = Table(box=None, pad_edge=False, padding=(0, 2, 0, 0), header_style="bold")
-    shown = [(field, field.shown) for field in SCHEME_FIELDS if field.shown is not None]
+    priced = any(scheme.cost.lines for scheme in plan.schemes)
+    shown = [
+        (field, field.shown)
+        for field in SCHEME_FIELDS
+        if field.shown is not None and (priced or field.unit != "currency")
+    ]
     crossed = any(scheme.route.crossing for scheme in schemes)
     for field, how in shown:
         cells = [_cell(plan, field, how, scheme) for scheme in schemes]

@@ -54,6 +54,12 @@ def test_the_table_holds_one_line_a_scheme(plan):
     assert lines[3][-6:] == ["306", "7.97", "-0.80", "21,300", "unfit", "suction"]
 
 
+def test_where_nothing_has_a_price_no_cost_is_shown(plan):
+    free = [replace(scheme, cost=replace(scheme.cost, lines=(), total=0.0)) for scheme in plan.schemes]
+    assert "cost" in shown(scheme_table(plan))
+    assert "cost" not in shown(scheme_table(replace(plan, schemes=tuple(free))))
+
+
 def test_long_names_are_folded_not_cut(plan):
     best = plan.schemes[0]
     name = "PE 100 RC SDR 17 DN 315 with a protective coat, coil of 100 m, on stock"
