@@ -170,7 +170,8 @@ class Bench:
         text = (
             f"No path {where}{clear} ({ask.neighbours} neighbours, {rule}) carries more than "
             f"{best.high:.4g} m3/s in one pipe; the best found carries {best.low:.4g} by the same rule. "
-            f"The path is {path.length_m:.1f} m long; no line of any kind{ends} is shorter than {straight:.1f} m."
+            f"On the grid its path is {path.length_m:,.1f} m long; "
+            f"no line of any kind{ends} is shorter than {straight:,.1f} m."
         )
         text = f"{text} {claim}".rstrip()
         return Proof(path.length_m, straight, free_ratio(self.scene.grid), whole, best.low, best.high, text)

@@ -38,7 +38,7 @@ def suction(matter: Matter) -> Check:
     """Hold the least reserve left, at duty, against nothing; under half a metre is a caution."""
     left = matter.appraisal.reserve_left_m
     limits = matter.conditions.limits
-    at = f"at chainage {matter.appraisal.duty.governing_chainage_m:.0f} m"
+    at = f"at chainage {matter.appraisal.duty.governing_chainage_m:,.0f} m"
     broken, slim = left < -ROUNDING_M, left < SLIM_RESERVE_M
     size = amount(left, 2) if broken or left > 0.0 else "0.00"
     if slim and not broken and left > 0.5 * SLIM_RESERVE_M:
