@@ -289,7 +289,7 @@ PRESSURE_FIELDS: tuple[SchemeField, ...] = (
         "",
         "text",
         None,
-        "Why it stops there: `suction` (the limit leaves no flow), `outlet` (level with it), `intake` (draws air).",
+        "Why it stops there: `suction` (the limit leaves no flow), `outlet` (level with it), `intake` (may draw air).",
         lambda _, s: s.appraisal.largest.breaking_cause,
     ),
 )

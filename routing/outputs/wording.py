@@ -10,7 +10,7 @@ _GROUPED_FROM = 10_000.0
 _BREAKING: dict[str, str] = {
     "suction": "from there the crown pressure allows no flow",
     "outlet": "it then stands level with the outlet",
-    "intake": "the intake mouth then draws air",
+    "intake": "the intake mouth may then draw air",
 }
 
 

@@ -43,7 +43,7 @@ def test_what_is_said(screen, plan):
     found = flat(screen)
     assert plan.site.title in found
     assert "Limited by energy: 121 l/s a pipe at the lowest level, 133 l/s at the present level." in found
-    assert "Stops when the water is down to 97.80 m: the intake mouth then draws air." in found
+    assert "Stops when the water is down to 97.80 m: the intake mouth may then draw air." in found
     assert "Proven for the whole DEM." in found
     assert "1 check not made: Air drawn at the outlet. See checks.csv." in found
     assert "steel 168.3 x 4: the fall of 8.00 m carries 31 l/s at most" in found
