@@ -14,7 +14,6 @@ from routing.errors import SiteError
 from routing.planning.placing import first_window, place_ends
 from routing.planning.reports import Reporter
 from routing.planning.scenes import survey
-from routing.planning.toes import toe_cells, toe_distance_m
 from routing.terrain import open_dem
 
 WEST, NORTH, CELL = 500000.0, 5000000.0, 10.0
@@ -153,15 +152,6 @@ def test_no_place_low_enough_names_the_lowest(make_job, ground, look_at):
 
 
 # ---------------------------------------------------------------- the toe
-
-
-def test_the_toe_lies_where_the_ground_falls_back_to_the_present_level(make_job, ground, look_at):
-    """The dam's crest is at column 30 and 103 m, with slopes 1 in 10 (1 m a cell): it is back at 100 m at column 33."""
-    scene = look_at(make_job(open_valley(ground), outlet=ANYWHERE))
-    toe = toe_cells(scene.terrain, scene.body.cells, scene.present_m)
-    assert set(np.argwhere(toe)[:, 1]) == {33}
-    distance = toe_distance_m(scene.terrain, scene.body.cells, scene.present_m)
-    assert distance[20, 50] == pytest.approx(17 * STEP, rel=1e-3)
 
 
 def test_the_toe_does_not_follow_the_hillsides_down_the_valley(make_job, ground, look_at):

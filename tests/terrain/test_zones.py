@@ -5,15 +5,13 @@ import json
 import numpy as np
 import pytest
 import shapely
-from pyproj import CRS, Geod, Transformer
+from pyproj import Transformer
 from shapely import LineString, MultiPolygon, Point, Polygon, box
 from shapely.geometry import GeometryCollection
 
 from routing.errors import TerrainError
 from routing.records import ZoneAsk
 from routing.terrain import zone_map
-from routing.terrain.clipping import blocked_by, lay_over
-from routing.terrain.outlines import moved_polygon, on_the_turn_of
 
 UTM = "EPSG:32615"
 QUEEN = [(0, 1), (1, 1), (1, 0), (1, -1), (0, -1), (-1, -1), (-1, 0), (-1, 1)]
@@ -47,19 +45,6 @@ def centre(terrain, row, col):
     return c + a * (col + 0.5), f + e * (row + 0.5)
 
 
-def by_hand(terrain, shape, moves):
-    """Every cell and every move of a window, one by one, by the plain (not prepared) intersection matrix."""
-    rows, cols = terrain.shape
-    barred, blocked = np.zeros((rows, cols), dtype=bool), np.zeros((rows, cols), dtype=np.uint32)
-    for row, col in np.ndindex(rows, cols):
-        barred[row, col] = shape.relate_pattern(Point(centre(terrain, row, col)), "T********")
-        for bit, (down, right) in enumerate(moves):
-            if 0 <= row + down < rows and 0 <= col + right < cols:
-                line = LineString([centre(terrain, row, col), centre(terrain, row + down, col + right)])
-                blocked[row, col] |= np.uint32(line.relate_pattern(shape, "T********")) << np.uint32(bit)
-    return barred, blocked
-
-
 def blob(rng, rows, cols, *, holes=True, on_grid=False):
     """A star-shaped polygon anywhere on or over the edge of a grid of 1 m cells, perhaps with a hole."""
     count = int(rng.integers(3, 12))
@@ -75,39 +60,9 @@ def blob(rng, rows, cols, *, holes=True, on_grid=False):
     return shapely.union_all(parts) if parts else None
 
 
-@pytest.mark.parametrize("neighbours", [8, 16, 32])
-@pytest.mark.parametrize("on_grid", [False, True])
-def test_cells_and_moves_are_those_that_shapely_says_one_by_one(make_terrain, rng_of, neighbours, on_grid):
-    rng, moves = rng_of(neighbours), SETS[neighbours]
-    terrain = make_terrain(np.zeros((9, 10)))
-    reach = max(max(abs(r), abs(c)) for r, c in moves)
-    for _ in range(12):
-        shape = blob(rng, 9, 10, on_grid=on_grid)
-        if shape is None:
-            continue
-        overlay = lay_over(terrain, shape, reach)
-        barred, blocked = by_hand(terrain, shape, moves)
-        np.testing.assert_array_equal(overlay.inside, barred)
-        np.testing.assert_array_equal(blocked_by(terrain, overlay, moves), blocked)
-
-
 @pytest.fixture(scope="session")
 def rng_of():
     return np.random.default_rng
-
-
-def test_large_shapes_fill_their_inside_and_leave_their_holes(make_terrain):
-    """Away from the outline cells are not tested one by one: an area is counted by its closed form."""
-    terrain = make_terrain(np.zeros((300, 400)))
-    ring = Point(200.0, 150.0).buffer(120.0, quad_segs=200) - Point(200.0, 150.0).buffer(60.0, quad_segs=200)
-    overlay = lay_over(terrain, ring, 2)
-    assert overlay.inside.sum() == pytest.approx(np.pi * (120.0**2 - 60.0**2), rel=2e-3)
-    assert not overlay.inside[150, 200]
-    assert not overlay.inside[0, 0]
-    bits = blocked_by(terrain, overlay, SETS[16])
-    assert bits[150, 290] == 2**16 - 1  # deep inside
-    assert bits[150, 200] == 0  # deep in the hole
-    assert overlay.near.sum() < 0.15 * overlay.near.size
 
 
 def test_a_wall_thinner_than_a_cell_bars_every_move_over_it_and_none_beside_it(make_terrain, ask_of):
@@ -304,41 +259,6 @@ def utm_terrain(make_terrain):
     terrain = make_terrain(np.zeros((100, 100)))
     transform = (1.0, 0.0, 500000.0, 0.0, -1.0, 5000000.0)
     return replace(terrain, transform=transform, facts=replace(terrain.facts, transform=transform))
-
-
-def test_long_edges_follow_the_curve_that_they_become(make_terrain):
-    """A parallel of 45 degrees, 2 degrees long, bows by some 860 m in UTM: the image of the edge follows it."""
-    utm = CRS.from_user_input(UTM)
-    wide = Polygon([(-94, 45), (-92, 45), (-92, 45.5), (-94, 45.5)])
-    for within in (100.0, 1.0, 0.01):
-        moved = moved_polygon(wide, CRS.from_epsg(4326), utm, within)
-        lon = np.linspace(-94, -92, 4001)
-        x, y = Transformer.from_crs(4326, utm, always_xy=True).transform(lon, np.full(lon.size, 45.0))
-        assert shapely.distance(moved.exterior, shapely.points(x, y)).max() <= within
-    straight = moved_polygon(wide, CRS.from_epsg(4326), utm, 1e9)
-    assert shapely.distance(straight.exterior, shapely.points(x, y)).max() > 400.0
-    assert len(moved.exterior.coords) < 2000
-
-
-def test_the_area_of_a_moved_polygon_is_that_of_the_ellipsoid():
-    """Equal-area image of a degree square, against GeographicLib's own area between geodesics drawn dense."""
-    square = Polygon([(10, 60), (11, 60), (11, 61), (10, 61)])
-    moved = moved_polygon(square, CRS.from_epsg(4326), CRS.from_epsg(3035), 0.1)
-    dense = shapely.segmentize(square, 0.001)
-    area, _ = Geod(ellps="WGS84").geometry_area_perimeter(dense)
-    assert moved.area == pytest.approx(area, rel=1e-5)
-
-
-def test_degrees_across_the_antimeridian_and_turns_of_longitude():
-    wgs, utm = CRS.from_epsg(4326), CRS.from_epsg(32601)
-    # 10 km each way about 180 degrees at the equator: UTM zone 1 has its axis at 177 degrees west.
-    x, _ = Transformer.from_crs(wgs, utm, always_xy=True).transform(180.0, 0.0)
-    moved = moved_polygon(box(x - 1e4, 1e5, x + 1e4, 1.2e5), utm, wgs, 1e-6)
-    assert moved.bounds[2] - moved.bounds[0] == pytest.approx(0.18, abs=0.01)
-    for middle in (-179.9, 180.3, 539.0):
-        shown = on_the_turn_of(moved, wgs, middle)
-        assert abs(shown.centroid.x - middle) < 180.0
-        assert shown.area == pytest.approx(moved.area)
 
 
 def test_a_zone_where_the_crs_has_no_coordinates_is_refused(make_terrain, tmp_path):
