@@ -39,6 +39,8 @@ WANTED = 3
 _MOST_PASSES = 8
 # The duty of a route that carries just it leaves no room for any other way: a little less is asked of the others.
 _EASED = 0.995
+#: Reserve missing that is worth telling: the largest discharge leaves none, give or take a rounding.
+_TOLD_M = 0.001
 
 
 @dataclass(frozen=True, slots=True)
@@ -119,7 +121,8 @@ def _crossing(bench: Bench, place: Pass, name: str, *, used: bool) -> Crossing:
     return Crossing(name, float(x), float(y), place.level_m, place.length_m, lift, used, note)
 
 
-def _why(found: int, tried: int) -> str:
+def _why(found: int, tried: int, *, missing: bool) -> str:
+    """Say why there are not more ways; where all miss the suction limit, none of them is said to be crossable."""
     if found >= WANTED:
         return f"{found} ways over the divide between water and outlet are places of their own."
     if tried > found:
@@ -130,6 +133,11 @@ def _why(found: int, tried: int) -> str:
     if found == 0:
         return "No place on the divide can be crossed under the suction limit."
     places = "1 place" if found == 1 else f"{found} places"
+    if missing:
+        return (
+            f"{places} on the divide may serve once what is missing is made up: no other is then within the suction "
+            "limit and parted from the better ones by 5 % more length or half a metre more lift."
+        )
     return (
         f"{places} on the divide can be crossed: no other keeps to the suction limit and is parted from the better "
         "ones by 5 % more length or half a metre more lift."
@@ -169,4 +177,5 @@ def other_ways(bench: Bench, lead: Candidate, known: Iterable[Candidate]) -> Way
         named[place] = f"C{len(ways) + 1}"
         ways.append(Way(_crossing(bench, place, named[place], used=used or path is not None), path))
     names = {route: named[place] for route, place in taken.items()}
-    return Ways(tuple(ways), names, _why(sum(way.crossing.used for way in ways), len(ways)))
+    missing = lead.appraisal.duty.reserve_left_m < -_TOLD_M
+    return Ways(tuple(ways), names, _why(sum(way.crossing.used for way in ways), len(ways), missing=missing))

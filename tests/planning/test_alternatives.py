@@ -87,6 +87,7 @@ def test_the_least_bad_way_has_a_crossing_also_where_the_fall_is_too_small(make_
     assert not plan.feasible
     assert plan.crossings
     assert plan.schemes[0].route.crossing == "C1"
+    assert "can be crossed" not in plan.crossings_note
 
 
 def test_no_discharge_asked_every_crossing_tells_what_it_carries(make_job, ground, hand):
