@@ -63,7 +63,9 @@ class Places:
         """Return the crossing that a route takes; a new one where it takes none of these."""
         cell = self._step_over(route.cells)
         place = Pass(cell, float(self.divide.level_m[cell]), route.proof.graph_length_m)
-        return same_pass(self.divide.cells, self.total_m, self.divide.level_m, self.passes, place) or place
+        divide = self.divide
+        known = same_pass(divide.cells, self.total_m, divide.level_m, self.passes, place, step_m=divide.step_m)
+        return known or place
 
     def _step_over(self, cells: NDArray[np.intp]) -> tuple[int, int]:
         """Return the cell of the divide that is nearest to where a path leaves the water's side for good."""
@@ -164,7 +166,8 @@ def other_ways(bench: Bench, lead: Candidate, known: Iterable[Candidate]) -> Way
     back = search_back(far, replace(limitation, ceiling_gradient=0.0, along=False))
     total = there.length_m + back.length_m
     total[total > limitation.longest_m] = np.inf
-    found = Places(divide, total, tuple(distinct_passes(divide.cells, total, divide.level_m, _MOST_PASSES)))
+    passes = distinct_passes(divide.cells, total, divide.level_m, step_m=divide.step_m, most=_MOST_PASSES)
+    found = Places(divide, total, tuple(passes))
     places, taken = found.with_routes(one.route for one in known)
     wanted, named = WANTED - len(set(taken.values())), dict[Pass, str]()
     ways: list[Way] = []

@@ -3,14 +3,15 @@
 Ground belongs to whichever of the two a rising flood reaches it from first. Where both meet runs the divide: every
 route crosses it. The way over a place on it is as long as the shortest lengths to it and on from it. A place is a
 crossing of its own if joining it with a better one along the divide costs at least 5 % more length or half a metre
-more lift, or if it is a real choice beside it: at least 5 % longer and half a metre lower. Else it is a wiggle of that
-one.
+more lift, or if it is a real choice beside it: at least 5 % longer, half a metre lower, and well away from it (a fifth
+of the shorter way), so that two places on the flank of one saddle are not two. Else it is a wiggle of that one.
 """
 
 from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
+from typing import NamedTuple
 
 import numpy as np
 from numpy.typing import NDArray
@@ -21,6 +22,8 @@ from routing.search.grid import Grid
 
 MORE_LENGTH = 1.05
 MORE_LIFT_M = 0.5
+#: A choice lies at least this share of the shorter way's length from it.
+APART = 0.2
 # Divide cells this close are neighbours: the line of cells along a divide has gaps where it turns.
 _NEAR = 2
 
@@ -59,12 +62,15 @@ class Divide:
     level_m : (rows, cols) float64 array
         How high a step over the divide must rise from each of its cells: the cell's own ground or the lowest beside it
         on the outlet's side, whichever is higher. Without meaning elsewhere.
+    step_m
+        Mean ground distance between neighbouring cells along a row and across rows.
     """
 
     cells: BoolArray
     water_side: BoolArray
     outlet_side: BoolArray
     level_m: FloatArray
+    step_m: tuple[float, float] = (1.0, 1.0)
 
 
 def find_divide(grid: Grid, water: BoolArray, outlet: BoolArray) -> Divide:
@@ -91,6 +97,7 @@ def find_divide(grid: Grid, water: BoolArray, outlet: BoolArray) -> Divide:
         water_side=water_side,
         outlet_side=outlet_side,
         level_m=np.maximum(grid.level, beside),
+        step_m=(float(grid.step_x_m.mean()), float(grid.step_y_m.mean())),
     )
 
 
@@ -105,13 +112,21 @@ def _lowest_beside(level: FloatArray) -> FloatArray:
     return lowest
 
 
-def distinct_passes(divide: BoolArray, length_m: FloatArray, level_m: FloatArray, most: int = 9) -> list[Pass]:
+def distinct_passes(
+    divide: BoolArray,
+    length_m: FloatArray,
+    level_m: FloatArray,
+    *,
+    step_m: tuple[float, float] = (1.0, 1.0),
+    most: int = 9,
+) -> list[Pass]:
     """Find the crossings of their own along the divide, the shortest first.
 
     Looked at are the places that no neighbour on the divide undercuts in length, or none in height. Two of them are one
     crossing if some way along the divide joins them over places that are all less than 5 % longer than the longer of
     the two and less than half a metre higher than the higher one - unless the longer is 5 % longer and half a metre
-    lower than the other. Places that no way is allowed over have no length; there only the height counts.
+    lower than the other, and at least a fifth of the shorter way from it. Places that no way is allowed over have no
+    length; there only the height counts.
 
     Parameters
     ----------
@@ -121,25 +136,33 @@ def distinct_passes(divide: BoolArray, length_m: FloatArray, level_m: FloatArray
         Length of the shortest way over each cell; ``inf`` where none is allowed.
     level_m : (rows, cols) array
         Ground.
+    step_m
+        Ground distance between neighbouring cells along a row and across rows.
     most
         No more than this many are looked for.
     """
     cells = np.argwhere(divide)
-    lengths, levels = length_m[cells[:, 0], cells[:, 1]], level_m[cells[:, 0], cells[:, 1]]
-    if not np.isfinite(lengths).any():
+    line = _line(divide, cells, length_m, level_m, step_m)
+    if not np.isfinite(line.lengths).any():
         return []
-    kept = _of_their_own(lengths, levels, _neighbours(divide, cells), most)
-    return [Pass((int(cells[i][0]), int(cells[i][1])), float(levels[i]), float(lengths[i])) for i in kept]
+    kept = _of_their_own(line, most)
+    return [Pass((int(cells[i][0]), int(cells[i][1])), float(line.levels[i]), float(line.lengths[i])) for i in kept]
 
 
 def same_pass(
-    divide: BoolArray, length_m: FloatArray, level_m: FloatArray, passes: Sequence[Pass], place: Pass
+    divide: BoolArray,
+    length_m: FloatArray,
+    level_m: FloatArray,
+    passes: Sequence[Pass],
+    place: Pass,
+    *,
+    step_m: tuple[float, float] = (1.0, 1.0),
 ) -> Pass | None:
     """Return the crossing, the shortest of those given, that a place on the divide is one with; ``None`` without one.
 
     Parameters
     ----------
-    divide, length_m, level_m
+    divide, length_m, level_m, step_m
         As for `distinct_passes`.
     passes
         Crossings found there.
@@ -147,15 +170,36 @@ def same_pass(
         A cell of the divide, with the length of a way over it that is known to be allowed.
     """
     cells = np.argwhere(divide)
-    lengths, levels = length_m[cells[:, 0], cells[:, 1]], level_m[cells[:, 0], cells[:, 1]]
+    line = _line(divide, cells, length_m, level_m, step_m)
     number = {(int(row), int(col)): i for i, (row, col) in enumerate(cells)}
     here = number[place.cell]
-    lengths[here] = min(lengths[here], place.length_m)
-    pairs = _neighbours(divide, cells)
-    return next((one for one in passes if _one_crossing(lengths, levels, pairs, here, number[one.cell])), None)
+    line.lengths[here] = min(line.lengths[here], place.length_m)
+    return next((one for one in passes if _one_crossing(line, here, number[one.cell])), None)
 
 
-def _of_their_own(lengths: FloatArray, levels: FloatArray, pairs: NDArray[np.intp], most: int) -> list[int]:
+class _Line(NamedTuple):
+    """The cells of a divide, by number: lengths over them, levels, neighbours, and where they lie in metres."""
+
+    lengths: FloatArray
+    levels: FloatArray
+    pairs: NDArray[np.intp]
+    at_m: FloatArray
+
+
+def _line(
+    divide: BoolArray,
+    cells: NDArray[np.intp],
+    length_m: FloatArray,
+    level_m: FloatArray,
+    step_m: tuple[float, float],
+) -> _Line:
+    rows, cols = cells[:, 0], cells[:, 1]
+    at = np.column_stack([cols * step_m[0], rows * step_m[1]])
+    pairs = _neighbours(divide, cells) if len(cells) else np.zeros((2, 0), dtype=np.intp)
+    return _Line(length_m[rows, cols], level_m[rows, cols], pairs, at)
+
+
+def _of_their_own(line: _Line, most: int) -> list[int]:
     """Return the places of which no two are one crossing, the shortest first.
 
     A hardly longer place that is lower stands for its crossing in place of the shortest there; only the first one
@@ -163,8 +207,9 @@ def _of_their_own(lengths: FloatArray, levels: FloatArray, pairs: NDArray[np.int
     """
     kept: list[int] = []
     shortest: list[float] = []  # of each crossing, so that steps of a few per cent do not add up
-    for i in _least_of_their_own(lengths, levels, pairs):
-        same = [k for k, other in enumerate(kept) if _one_crossing(lengths, levels, pairs, i, other)]
+    lengths, levels = line.lengths, line.levels
+    for i in _least_of_their_own(line):
+        same = [k for k, other in enumerate(kept) if _one_crossing(line, i, other)]
         if not same and len(kept) < most:
             kept.append(i)
             shortest.append(lengths[i])
@@ -197,25 +242,29 @@ def _undercut(order: NDArray[np.intp], pairs: NDArray[np.intp]) -> BoolArray:
     return undercut
 
 
-def _least_of_their_own(lengths: FloatArray, levels: FloatArray, pairs: NDArray[np.intp]) -> list[int]:
+def _least_of_their_own(line: _Line) -> list[int]:
     """Return the places that no neighbour undercuts in length, or none in height; the shortest first."""
+    lengths, levels, pairs = line.lengths, line.levels, line.pairs
     by_length, by_level = np.lexsort((levels, lengths)), np.lexsort((lengths, levels))
     least = ~_undercut(by_length, pairs) | ~_undercut(by_level, pairs)
     return [int(i) for i in by_length if least[i] and np.isfinite(lengths[i])]
 
 
-def _one_crossing(lengths: FloatArray, levels: FloatArray, pairs: NDArray[np.intp], one: int, other: int) -> bool:
+def _one_crossing(line: _Line, one: int, other: int) -> bool:
     """Whether two places are one crossing."""
-    short, long = sorted((one, other), key=lambda i: lengths[i])
-    choice = lengths[long] >= MORE_LENGTH * lengths[short] and levels[long] <= levels[short] - MORE_LIFT_M
-    return not choice and _joined(lengths, levels, pairs, one, other)
+    short, long = sorted((one, other), key=lambda i: line.lengths[i])
+    length = line.lengths[short]
+    longer, lower = line.lengths[long] >= MORE_LENGTH * length, line.levels[long] <= line.levels[short] - MORE_LIFT_M
+    away = float(np.hypot(*(line.at_m[one] - line.at_m[other]))) >= APART * length
+    return not (longer and lower and away) and _joined(line, one, other)
 
 
-def _joined(lengths: FloatArray, levels: FloatArray, pairs: NDArray[np.intp], one: int, other: int) -> bool:
+def _joined(line: _Line, one: int, other: int) -> bool:
     """Whether a way along the divide joins two places without much more length or lift."""
     from scipy.sparse import coo_array  # noqa: PLC0415 - slow to import
     from scipy.sparse.csgraph import connected_components  # noqa: PLC0415
 
+    lengths, levels, pairs = line.lengths, line.levels, line.pairs
     low = levels < max(levels[one], levels[other]) + MORE_LIFT_M
     near = ~np.isfinite(lengths) | (lengths < MORE_LENGTH * max(lengths[one], lengths[other]))
     passable = low & near

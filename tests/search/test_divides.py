@@ -125,6 +125,14 @@ def test_of_two_places_on_one_slope_the_lower_stands_for_both():
     assert found[1].level_m == pytest.approx(1.0)
 
 
+def test_the_flank_of_a_saddle_is_no_crossing_of_its_own():
+    """A deep saddle close by: the shortest way climbs its flank, 5 % shorter and half a metre higher, and is no choice."""
+    ground = ridge({}, height=6.0)
+    ground[108:125, 38:43] = (1.0 + np.abs(np.arange(108, 125) - 116) * 0.35)[:, None]
+    found, _ = passes_of(ground, ceiling=4.0)
+    assert len(found) == 1
+
+
 def test_no_place_allowed_no_crossing():
     assert passes_of(ridge({}), ceiling=4.0)[0] == []
     assert distinct_passes(np.zeros((4, 4), bool), np.zeros((4, 4)), np.zeros((4, 4))) == []
