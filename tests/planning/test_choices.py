@@ -14,6 +14,7 @@ STEP = 10.0 / 0.9996
 def valley(ground):
     z = ground.reservoir()
     z[:, 42:] = 90.0 - 0.05 * np.arange(38)
+    z[5:35, 28:42] += 0.05 * np.abs(np.arange(5, 35) - 20)[:, None]  # lowest at row 20, steeper from there
     return z
 
 

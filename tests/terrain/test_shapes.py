@@ -3,6 +3,8 @@
 import numpy as np
 import pytest
 import shapely
+from pyproj import Transformer
+from rasterio import Affine
 from shapely import GeometryCollection, LineString, MultiLineString, MultiPolygon, Point, Polygon, box
 
 from routing.errors import TerrainError
@@ -67,6 +69,25 @@ def test_shapes_of_another_crs_land_where_they_were_drawn(read, crs):
     assert shape.symmetric_difference(box(20.0, 30.0, 320.0, 270.0)).area < 10.0
     line, _ = read("line", LineString([(0.0, 0.0), (300.0, 200.0)]), crs=crs)
     assert line.hausdorff_distance(LineString([(0.0, 0.0), (300.0, 200.0)])) < 0.02
+
+
+def test_long_lines_follow_the_curve_that_they_become(make_dem, tmp_path):
+    """A parallel of 45 degrees, 2 degrees long, bows by some 480 m in UTM (pyproj, point by point)."""
+    import geopandas
+
+    geopandas.GeoDataFrame(geometry=[LineString([(-94.0, 45.0), (-92.0, 45.0)])], crs="EPSG:4326").to_file(
+        tmp_path / "parallel.gpkg"
+    )
+    wide = Affine(1000.0, 0.0, 400000.0, 0.0, -1000.0, 5050000.0)
+    ask = TerrainAsk(file=make_dem(np.zeros((200, 200), dtype="float32"), transform=wide), vertical_unit="m")
+    with open_dem(ask) as dem:
+        found = read_shapes(dem, LayerAsk(tmp_path / "parallel.gpkg"), "line")
+    turn = Transformer.from_crs("EPSG:4326", UTM, always_xy=True)
+    lon = np.linspace(-94.0, -92.0, 501)
+    points = shapely.points(*turn.transform(lon, np.full(lon.size, 45.0)))
+    assert shapely.distance(found, points).max() < 0.1
+    straight = LineString([shapely.get_coordinates(points)[0], shapely.get_coordinates(points)[-1]])
+    assert shapely.distance(straight, points).max() > 400.0
 
 
 def test_parts_of_many_kinds_are_joined(read):
