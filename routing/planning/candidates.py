@@ -173,7 +173,8 @@ def _least_bad(bench: Bench, pipe: Pipe, best: Found, count: int, duty: float | 
             shortfall = _too_weak(pipe, duty, most)
             if best.path is None:
                 shortfall = _shortfall(bench, pipe, duty, still, limitation)
-                shortfall = replace(shortfall, text=_both(pipe, duty, still, most))
+                # No raise alone makes a route for this pipe, so a pipe for which one does comes into the headline.
+                shortfall = replace(shortfall, raise_m=None, text=_both(pipe, duty, still, most))
             return Offer((candidate,), shortfall, still.proven_outside)
     return Offer((), _shortfall(bench, pipe, duty, raised, limitation), raised.proven_outside)
 

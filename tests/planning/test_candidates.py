@@ -195,7 +195,7 @@ def test_too_high_and_too_much_are_told_together(make_job, ground, hand, to_cres
     need = crown_need_m(hand, 0.0, 107.5, to_crest(107.5))
     most = hand.energy_m3s(9.0, ground.length(values[20, 10:61]))
     assert (shortfall.cause, shortfall.duty_m3s) == ("suction", 0.45)
-    assert shortfall.raise_m == pytest.approx(need, abs=0.003)
+    assert shortfall.raise_m is None, "no raise alone makes a route"
     assert figure(shortfall.text, r"too high by ([\d.]+) m even for still water") == pytest.approx(need, abs=0.006)
     assert figure(shortfall.text, r"at most ([\d.]+) l/s") == pytest.approx(most * 1e3, abs=0.05)
 
