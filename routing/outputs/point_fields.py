@@ -58,7 +58,7 @@ POINT_FIELDS: tuple[Field[MapPoint], ...] = (
         "m",
         "number",
         2,
-        "For a crossing: no way over it from intake to outlet is shorter on the grid.",
+        "For a crossing: shortest way on the grid over this very cell; a route a little beside it may be shorter.",
         lambda _, p: None if p.crossing is None else p.crossing.length_m,
     ),
     Field(

@@ -17,7 +17,7 @@ CROSSING_FIELDS: tuple[Field[CrossingRow], ...] = (
         "m",
         "number",
         2,
-        "No way over it is shorter on the grid, from intake to outlet along the ground.",
+        "Shortest way over this very cell on the grid, end to end; a route a little beside it may be shorter.",
         lambda _, r: r.crossing.length_m,
     ),
     Field("lift_m", "m", "number", 3, "Ground there above the lowest level.", lambda _, r: r.crossing.lift_m),
