@@ -5,7 +5,7 @@ The crossings of the routes that are known already are always among them.
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Sequence
 from dataclasses import dataclass, replace
 
 import numpy as np
@@ -69,10 +69,24 @@ class Places:
 
     def _step_over(self, cells: NDArray[np.intp]) -> tuple[int, int]:
         """Return the cell of the divide that is nearest to where a path leaves the water's side for good."""
-        last = np.flatnonzero(self.divide.water_side[cells[:, 0], cells[:, 1]])[-1]
+        last = self._last(cells)
         line = np.argwhere(self.divide.cells)
         row, col = line[int(np.argmin(np.sum((line - cells[last]) ** 2, axis=1)))]
         return int(row), int(col)
+
+    def _last(self, cells: NDArray[np.intp]) -> int:
+        """Return the position of the last cell of a path on the water's side."""
+        return int(np.flatnonzero(self.divide.water_side[cells[:, 0], cells[:, 1]])[-1])
+
+    def seen_on(self, route: Route, place: Pass, level_m: FloatArray) -> Pass:
+        """Return a crossing where a route that takes it really crosses: at the higher cell of its step over the divide.
+
+        A crossing is a stretch of the divide, and its best place may lie some cells beside the route.
+        """
+        last = self._last(route.cells)
+        step = [(int(row), int(col)) for row, col in route.cells[last : last + 2]]
+        cell = max(step, key=lambda one: level_m[one])
+        return replace(place, cell=cell, level_m=float(level_m[cell]), length_m=route.proof.graph_length_m)
 
     def with_routes(self, routes: Iterable[Route]) -> tuple[Places, dict[str, Pass]]:
         """Return the places with the crossings of known routes among them, and the crossing of each route by name."""
@@ -146,7 +160,7 @@ def _why(found: int, tried: int, *, missing: bool) -> str:
     )
 
 
-def other_ways(bench: Bench, lead: Candidate, known: Iterable[Candidate]) -> Ways:
+def other_ways(bench: Bench, lead: Candidate, known: Sequence[Candidate]) -> Ways:
     """Find ways over different crossings: those of the known candidates, and more up to three.
 
     Lengths from the intake under the ceiling, and to the outlet, for the pipe and duty of a leading candidate, rank the
@@ -170,6 +184,8 @@ def other_ways(bench: Bench, lead: Candidate, known: Iterable[Candidate]) -> Way
     found = Places(divide, total, tuple(passes))
     places, taken = found.with_routes(one.route for one in known)
     wanted, named = WANTED - len(set(taken.values())), dict[Pass, str]()
+    by_name = {one.route.name: one.route for one in reversed(known)}
+    takers = {place: by_name[route] for route, place in reversed(taken.items())}
     ways: list[Way] = []
     for place in places.passes:
         used = place in taken.values()
@@ -178,7 +194,8 @@ def other_ways(bench: Bench, lead: Candidate, known: Iterable[Candidate]) -> Way
         path = None if used else _over(far, there, place, limitation)
         wanted -= path is not None
         named[place] = f"C{len(ways) + 1}"
-        ways.append(Way(_crossing(bench, place, named[place], used=used or path is not None), path))
+        told = places.seen_on(takers[place], place, grid.level) if used else place
+        ways.append(Way(_crossing(bench, told, named[place], used=used or path is not None), path))
     names = {route: named[place] for route, place in taken.items()}
     missing = lead.appraisal.duty.reserve_left_m < -_TOLD_M
     return Ways(tuple(ways), names, _why(sum(way.crossing.used for way in ways), len(ways), missing=missing))

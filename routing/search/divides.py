@@ -24,6 +24,8 @@ MORE_LENGTH = 1.05
 MORE_LIFT_M = 0.5
 #: A choice lies at least this share of the shorter way's length from it.
 APART = 0.2
+# ... and as many cells: what lies closer is one place to a DEM.
+_APART_CELLS = 5
 # Divide cells this close are neighbours: the line of cells along a divide has gaps where it turns.
 _NEAR = 2
 
@@ -184,6 +186,7 @@ class _Line(NamedTuple):
     levels: FloatArray
     pairs: NDArray[np.intp]
     at_m: FloatArray
+    least_apart_m: float
 
 
 def _line(
@@ -196,7 +199,7 @@ def _line(
     rows, cols = cells[:, 0], cells[:, 1]
     at = np.column_stack([cols * step_m[0], rows * step_m[1]])
     pairs = _neighbours(divide, cells) if len(cells) else np.zeros((2, 0), dtype=np.intp)
-    return _Line(length_m[rows, cols], level_m[rows, cols], pairs, at)
+    return _Line(length_m[rows, cols], level_m[rows, cols], pairs, at, _APART_CELLS * max(step_m))
 
 
 def _of_their_own(line: _Line, most: int) -> list[int]:
@@ -255,7 +258,7 @@ def _one_crossing(line: _Line, one: int, other: int) -> bool:
     short, long = sorted((one, other), key=lambda i: line.lengths[i])
     length = line.lengths[short]
     longer, lower = line.lengths[long] >= MORE_LENGTH * length, line.levels[long] <= line.levels[short] - MORE_LIFT_M
-    away = float(np.hypot(*(line.at_m[one] - line.at_m[other]))) >= APART * length
+    away = float(np.hypot(*(line.at_m[one] - line.at_m[other]))) >= max(APART * length, line.least_apart_m)
     return not (longer and lower and away) and _joined(line, one, other)
 
 

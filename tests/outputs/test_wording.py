@@ -101,6 +101,8 @@ def test_least_shortfall(make):
 
 
 def test_breaking_level_says_why():
-    assert breaking_text(97.8, "intake") == "Stops when the water is down to 97.80 m: the intake mouth may then draw air."
+    assert (
+        breaking_text(97.8, "intake") == "Stops when the water is down to 97.80 m: the intake mouth may then draw air."
+    )
     assert breaking_text(97.8, "a cause of another kind").endswith("97.80 m: a cause of another kind.")
     assert len({breaking_text(1.0, cause) for cause in ("suction", "outlet", "intake")}) == 3

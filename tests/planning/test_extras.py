@@ -43,3 +43,11 @@ def test_every_route_names_a_crossing_that_is_listed(plan):
         place = next(c for c in plan.crossings if c.name == scheme.route.crossing)
         gap = ((scheme.route.x - place.x) ** 2 + (scheme.route.y - place.y) ** 2).min() ** 0.5
         assert gap < 60.0
+
+
+def test_a_crossing_lies_on_a_route_that_takes_it(plan):
+    for crossing in plan.crossings:
+        routes = [s.route for s in plan.schemes if s.route.crossing == crossing.name]
+        gap = min(((r.x - crossing.x) ** 2 + (r.y - crossing.y) ** 2).min() ** 0.5 for r in routes)
+        assert gap < 1e-6
+        assert min(r.crest_m for r in routes) >= crossing.level_m - 1e-6 or len(routes) > 1
