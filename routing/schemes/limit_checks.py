@@ -51,6 +51,11 @@ def suction(matter: Matter) -> Check:
         reason = f"the crest lies {size} m {relation} the highest lift of {limits.highest_lift_m:g} m{wanted}, {at}"
     elif broken:
         reason = f"the crown lies {size} m too high {at} to keep the reserve of {limits.reserve_m:g} m of water"
+    elif matter.appraisal.duty_m3s is None and left <= ROUNDING_M:
+        reason = (
+            f"it runs as hard as the reserve of {limits.reserve_m:g} m allows, with nothing left above it {at}: "
+            "the outlet valve must hold it there, or less be asked"
+        )
     else:
         reason = f"{size} m of water are left above the reserve of {limits.reserve_m:g} m{wanted}, least {at}"
     grade = _by_limit(broken=broken, slim=slim)
