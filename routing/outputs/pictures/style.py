@@ -19,7 +19,7 @@ EARTH = "#8C7B6B"
 
 #: A4 landscape, in inches, and the dots of the PNG per inch.
 PAGE_IN = (11.69, 8.27)
-DPI = 200
+DPI = 150
 #: The relief inside an SVG needs no more.
 SVG_IMAGE_DPI = 130
 
