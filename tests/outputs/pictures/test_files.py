@@ -35,8 +35,8 @@ def test_the_same_plan_gives_the_same_bytes_whatever_was_set_before(make, plan, 
 def test_a_png_of_a4_with_its_text(plan):
     png, _ = picture(overview(plan))
     image = Image.open(io.BytesIO(png))
-    assert image.size == (2338, 1654)  # 11.69 by 8.27 inches at 200 dots
-    assert image.info["dpi"] == pytest.approx((200, 200), abs=0.1)
+    assert image.size == (1753, 1240)  # 11.69 by 8.27 inches at 150 dots
+    assert image.info["dpi"] == pytest.approx((150, 150), abs=0.1)
     assert "Long section of 1 x PE 315 SDR 17 on route R1" in image.info["Description"]
     assert image.info["Title"] == "Upper basin, blocked bottom outlet"
     assert "Creation Time" not in image.info
