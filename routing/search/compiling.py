@@ -20,11 +20,12 @@ _KERNEL_FILES = ("kernel.py", "flooding.py", "dividing.py")
 
 
 def _fingerprint() -> str:
-    """Hash of the kernel sources, the numba release and the Python release."""
+    """Hash of the kernel sources, their place, the numba release and the Python release."""
     digest = hashlib.sha256()
     for name in _KERNEL_FILES:
         digest.update((_HERE / name).read_bytes())
-    digest.update(f"{metadata.version('numba')} {sys.version}".encode())
+    # numba keeps kernels by the place of their sources: another install of the same release has to compile its own.
+    digest.update(f"{_HERE.resolve()} {metadata.version('numba')} {sys.version}".encode())
     return digest.hexdigest()[:16]
 
 
