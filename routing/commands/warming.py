@@ -10,4 +10,4 @@ def tell_if_compiling(*, quiet: bool) -> None:
     from routing.planning import kernels_ready
 
     if not quiet and not kernels_ready():
-        note("The search kernels are being compiled, once after an install; this takes about half a minute.")
+        note("The search kernels are being compiled, once after an install; this takes some ten seconds.")
