@@ -87,8 +87,8 @@ def _at_lead(bench: Bench, lead: Candidate, path: PathEdges, known: dict[str, Pr
     return make_candidate(bench, lead.pipe, path, proof, lead.count, lead.appraisal.duty_m3s)
 
 
-def _named(candidates: Iterable[Candidate], crossing: str) -> list[Candidate]:
-    return [replace(one, route=replace(one.route, crossing=crossing)) for one in candidates]
+def _named(candidate: Candidate, crossing: str) -> Candidate:
+    return replace(candidate, route=replace(candidate.route, crossing=crossing))
 
 
 def find_extras(
@@ -115,12 +115,12 @@ def find_extras(
     known = {one.pipe.name: one.route.proof for one in candidates}
     sturdy = _sturdier(bench, candidates, known)
     ways = other_ways(bench, lead, (*candidates, *sturdy))
-    named = tuple(_named((one,), ways.taken[one.route.name])[0] for one in candidates)
-    fresh = [_named((one,), ways.taken[one.route.name])[0] for one in sturdy]
+    named = tuple(_named(one, ways.taken[one.route.name]) for one in candidates)
+    fresh = [_named(one, ways.taken[one.route.name]) for one in sturdy]
     for way in ways.ways:
         if way.path is not None:
             served = _served(bench, way.path, known) or [_at_lead(bench, lead, way.path, known)]
-            fresh += _named(served, way.crossing.name)
+            fresh += [_named(one, way.crossing.name) for one in served]
     samples = []
     for sampled in sampled_paths(bench, lead, cost_factor):
         same = bench.names.get(sampled.path.cells.tobytes(), "")
@@ -147,4 +147,4 @@ def _near(bench: Bench, candidate: Candidate, ways: Ways) -> Candidate:
         return float((across**2 + down**2).min())
 
     best = min((way.crossing for way in ways.ways), key=gap)
-    return replace(candidate, route=replace(candidate.route, crossing=best.name))
+    return _named(candidate, best.name)

@@ -11,7 +11,6 @@ from collections.abc import Callable
 from dataclasses import dataclass, replace
 
 import numpy as np
-from numpy.typing import NDArray
 
 from routing.search.ends import Job, arrival, most_by_energy, search_back, search_job
 from routing.search.paths import PathEdges, may_escape, path_edges, raise_needed, with_highest
@@ -163,11 +162,6 @@ def _figure(job: Job, flow: Flow, path: PathEdges) -> float:
     return figure
 
 
-def _carried(job: Job, flow: Flow, way: NDArray[np.intp], limitation: Limitation) -> tuple[PathEdges, float]:
-    path = path_edges(job.grid, way, limitation)
-    return path, _figure(job, flow, path)
-
-
 def _first_bracket(job: Job, flow: Flow) -> _Bracket:
     """Search under the ceiling of still water, and where suction governs narrow the bracket down by cells."""
     still = flow.limit_at(0.0)
@@ -187,7 +181,8 @@ def _first_bracket(job: Job, flow: Flow) -> _Bracket:
     limits = [flow.limit_at(figure) for figure in figures]
     bound = bound_by_cells(job.grid, (job.source, job.goal), (forward, backward), limits, figures, job.tick)
     if bound.way is not None:
-        bracket = bracket.with_path(*_carried(job, flow, bound.way, still))
+        path = path_edges(job.grid, bound.way, still)
+        bracket = bracket.with_path(path, _figure(job, flow, path))
     if bound.high >= bracket.high:
         return bracket
     longest = flow.limit_at(bound.high).longest_m
